@@ -142,3 +142,42 @@ class Holding:
         if self.count.sureness is Sureness.PLENTY:
             return None
         return self.count.number - self.claimed
+
+
+@dataclass(frozen=True, slots=True)
+class Entry:
+    """One statement of what lies in a drawer, as a sheet row or a command says it.
+
+    Attributes
+    ----------
+    part : what it is. drawer : name of the place, not blank. count : how many are there.
+    place : where it was said ("parts.csv row 7"), for messages.
+    """
+
+    part: Part
+    drawer: str
+    count: Count
+    place: str
+
+    @property
+    def identity(self) -> tuple[object, ...]:
+        """What makes two entries speak of the same holding; drawers differ by more than case."""
+        return identity_of(self.part, self.drawer)
+
+
+def identity_of(part: Part, drawer: str) -> tuple[object, ...]:
+    """Tell holdings apart: equal results are the same kind of part in the same drawer.
+
+    Price, rating in watts, supplier and note may be corrected without making it another holding.
+    """
+    return (
+        part.kind,
+        part.value,
+        part.tolerance,
+        part.technology,
+        part.voltage,
+        part.measured,
+        part.taper,
+        part.turns,
+        drawer.casefold(),
+    )

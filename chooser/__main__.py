@@ -1,0 +1,5 @@
+"""`python -m chooser`."""
+
+from chooser.cli.app import main
+
+main()

@@ -1,0 +1,222 @@
+"""Reading a part as a person says it in one breath: "10k 1% metal film", "4u7 63 V polyester".
+
+Words in any order: a value, a tolerance, a voltage, a power, a tempco, a taper, the kind and the
+technology, each read as in the cell of a sheet. Nothing is guessed: a value that may be ohms or
+farads needs its kind said.
+"""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass, replace
+from functools import partial
+from typing import Any
+
+from chooser import quantities
+from chooser.errors import AmbiguousValueError, BadRequestError, UnreadableValueError
+from chooser.parts import Entry, Kind, Part
+from chooser.sheets import traits
+
+# Which trait a word speaks of, by its form; tried in this order.
+_FORMS: tuple[tuple[str, re.Pattern[str]], ...] = (
+    ("tolerance", re.compile(r"[±+-].*|.*%")),
+    ("voltage", re.compile(r"[\d.,]+k?(V|v|VDC|Vdc)")),
+    ("turns", re.compile(r"\d+-?turns?", re.IGNORECASE)),
+    ("power", re.compile(r"[\d.,/]+m?[Ww]")),
+    ("tempco", re.compile(r"[\d.,]+ppm(/[KC])?", re.IGNORECASE)),
+    ("value", re.compile(r"[.,]?\d.*|[RrNnUuPp\u00b5\u03bc]\d.*")),
+)
+# Without a word for it, only these may be farads; 10K is ohms to everybody, though on a small
+# ceramic it could be 10 pF with its tolerance letter.
+_FARADS = re.compile(r"[pnuf\u00b5\u03bc]|^\d+$|^\d{3}[a-z]$", re.IGNORECASE)
+# A unit typed apart from its number: "10 k", "4.7 uF", "63 V", "1 %", "10 k ohm".
+_UNIT_APART = re.compile(
+    r"(?<=\d)\s+(?=%|[kKMuUnNpP\u00b5\u03bc]?(?:\s?[\u03a9\u2126]|\s?ohms?\b|F\b)"
+    r"|[kKMunp\u00b5\u03bc](?:\s|$)|k?V\b|m?W\b|ppm)"
+)
+_OHM_APART = re.compile(r"(?<=\d[kKMR])\s+(?=[\u03a9\u2126]|ohms?\b)", re.IGNORECASE)
+
+
+@dataclass(frozen=True, slots=True)
+class _Words:
+    """The words of an entry, sorted by what they speak of."""
+
+    kind: Kind | None
+    traits: dict[str, str]
+    technology: str
+
+
+def read_entry(
+    text: str, kind: Kind | None, said: Mapping[str, str], drawer: str, count: str
+) -> Entry:
+    """Read a part with its drawer and count.
+
+    Parameters
+    ----------
+    text, kind, said : as `read_part`. drawer : name of the drawer. count : 20, ~50 or plenty.
+
+    Raises
+    ------
+    BadRequestError : the drawer has no name, or as `read_part`.
+    UnreadableValueError : as `read_part`.
+    """
+    name = " ".join(drawer.split())
+    if not name:
+        raise BadRequestError("The drawer has no name; give one, such as --drawer A4.")
+    pieces = quantities.parse_count(count)
+    return Entry(read_part(text, kind, said), name, pieces, "the command line")
+
+
+def read_part(text: str, kind: Kind | None = None, said: Mapping[str, str] | None = None) -> Part:
+    """Read a part from one line of text.
+
+    Parameters
+    ----------
+    text : such as "10k 1% metal film". kind : where it is known; it need not be in the text then.
+    said : further traits by the name of their field in `Part`, as text; they win over the line.
+
+    Returns
+    -------
+    The part, in SI units.
+
+    Raises
+    ------
+    BadRequestError : no value, more than one, or words that contradict each other.
+    UnreadableValueError : a trait cannot be read, or has more than one reading.
+    """
+    words = _sorted_words(text)
+    texts = words.traits | dict(said or {})
+    if "value" not in texts:
+        raise BadRequestError(f"{text!r} holds no value; write one such as 10k, 4u7 or 100n.")
+    technology = texts.pop("technology", words.technology)
+    marking = texts.pop("value")
+    kind = _kind_of(marking, technology, _agreed(kind, words.kind, text))
+    cell = traits.read_value(marking, kind)
+    part = Part(kind, cell.values[0], marking, cell.tolerance)
+    if technology:
+        part = replace(part, technology=traits.read_technology(technology, kind))
+    # Not checked field by field by mypy: each parser below gives what its field takes.
+    fields: dict[str, Any] = {name: _READERS[name](seen, kind) for name, seen in texts.items()}
+    return _sensible(replace(part, **fields))
+
+
+def _sorted_words(text: str) -> _Words:
+    kind: Kind | None = None
+    found: dict[str, str] = {}
+    rest: list[str] = []
+    for word in _OHM_APART.sub("", _UNIT_APART.sub("", text)).replace(", ", " ").split():
+        called = _read_or_none(traits.read_kind, word)
+        trait = _trait_of(word)
+        if called is not None:
+            kind = _agreed(kind, called, text)
+        elif trait is None:
+            rest.append(word)
+        elif trait in found:
+            raise BadRequestError(
+                f"{text!r} gives two readings for the {trait}, {found[trait]} and {word}; "
+                "write one of them."
+            )
+        else:
+            found[trait] = word
+    return _Words(kind, found, " ".join(rest))
+
+
+def _trait_of(word: str) -> str | None:
+    """Tell which trait a word speaks of by its form, None where it is a word of its own."""
+    if len(word) > 1 and _read_or_none(traits.read_taper, word) is not None:
+        return "taper"
+    return next((name for name, form in _FORMS if form.fullmatch(word)), None)
+
+
+def _agreed(first: Kind | None, second: Kind | None, text: str) -> Kind | None:
+    if first is not None and second is not None and first is not second:
+        raise BadRequestError(f"{text!r} is called a {first} and a {second}; say one of them.")
+    return first or second
+
+
+def _kind_of(marking: str, technology: str, said: Kind | None) -> Kind:
+    """Find the kind from what was said, else from the only kind that fits."""
+    if said is not None:
+        return said
+    by_value = _kinds_by_value(marking)
+    fitting = [
+        kind
+        for kind in by_value
+        if not technology or _read_or_none(partial(traits.read_technology, kind=kind), technology)
+    ]
+    if len(fitting) == 1:
+        return fitting[0]
+    if len(by_value) == 1:
+        return by_value[0]  # the technology is then refused with its near names
+    if not by_value:
+        return Kind.RESISTOR  # the value is then refused with what is wrong in it
+    raise BadRequestError(
+        f"{marking!r} may be a resistor or a capacitor; say which with --kind resistor or "
+        "--kind capacitor."
+    )
+
+
+def _kinds_by_value(marking: str) -> list[Kind]:
+    """Tell what a value may be of: 10k ohms, 100n farads, 100 and 473K either."""
+    kinds = (Kind.RESISTOR, Kind.CAPACITOR) if _FARADS.search(marking) else (Kind.RESISTOR,)
+    return [kind for kind in kinds if _can_be_read(marking, kind)]
+
+
+def _can_be_read(marking: str, kind: Kind) -> bool:
+    """Tell whether a value can be read as of this kind; an ambiguous one can, once it is said."""
+    try:
+        traits.read_value(marking, kind)
+    except AmbiguousValueError:
+        return True
+    except UnreadableValueError:
+        return False
+    return True
+
+
+def _read_or_none(read: Callable[[str], Any], text: str) -> Any:
+    try:
+        return read(text)
+    except UnreadableValueError:
+        return None
+
+
+def _plain(read: Callable[[str], object]) -> Callable[[str, Kind], object]:
+    return lambda text, _kind: read(text)
+
+
+_READERS: dict[str, Callable[[str, Kind], object]] = {
+    "tolerance": _plain(quantities.parse_tolerance),
+    "voltage": _plain(quantities.parse_voltage),
+    "power": _plain(quantities.parse_power),
+    "tempco": _plain(quantities.parse_tempco),
+    "measured": traits.read_measured,
+    "meter": _plain(traits.read_meter),
+    "leakage": _plain(quantities.parse_current),
+    "taper": _plain(traits.read_taper),
+    "turns": _plain(quantities.parse_turns),
+    "end_resistance": _plain(quantities.parse_resistance),
+    "note": _plain(str),
+}
+
+
+def _sensible(part: Part) -> Part:
+    """Refuse traits that the kind does not have, and a reading that lost its unit."""
+    furthest = 3.0  # no part that works is this many times off; a lost k or n is a thousand times
+    if not part.value / furthest <= part.effective <= part.value * furthest:
+        raise BadRequestError(
+            f"The measured value is far from the {part.marking} printed on the part; "
+            "look at its unit, such as 9.97k."
+        )
+    foreign: tuple[str, ...] = ()
+    if part.kind not in (Kind.POT, Kind.TRIMMER):
+        foreign += ("taper", "turns", "end_resistance")
+    if part.kind is not Kind.CAPACITOR:
+        foreign += ("leakage",)
+    for name in foreign:
+        if getattr(part, name) is not None:
+            raise BadRequestError(
+                f"A {part.kind} has no {name.replace('_', ' ')}; "
+                "leave it out, or say another --kind."
+            )
+    return part

@@ -1,0 +1,223 @@
+"""The balanced order: inside the band first, then likely miss x 1.10 ** parts, few alike.
+
+For every capacitor network and every number of resistors the NEAREST resistor networks are
+weighed.  Most need not even be looked at: a circuit's spread is at least that of its capacitors
+and its best resistor, so where that alone, weighted by the parts, is no better than the last
+place, nothing is lost by skipping it.
+
+The list is kept various: each further fit on the same capacitor network counts as a tenth worse
+than it is when places are given away.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from math import inf
+
+import numpy as np
+from numpy.typing import NDArray
+
+from chooser.circuits.monostable import Drive, interval, sensitivity, typical
+from chooser.interval import likely_miss, mean_of, spread_of
+from chooser.networks import Join
+from chooser.search.exact import SAME
+from chooser.search.nearest import Near, nearest
+from chooser.search.pools import Floats, Ints
+from chooser.search.ranking import Judge, Pairing
+from chooser.search.slots import CapacitorSlots, lot_tolerances
+from chooser.search.space import Level, Space
+from chooser.search.tables import Rows
+
+NEAREST = 8
+"""Resistor networks weighed for every capacitor network and number of resistors."""
+
+PER_PART = 1.10
+"""Each extra part must cut the likely miss by this factor to earn its place."""
+
+PER_VARIATION = 1.10
+"""Each further fit on the same capacitors must be better by this factor to get a place."""
+
+OUTSIDE = 1e6
+"""Added to the score outside the band: every fit inside comes first; scores stay far below."""
+
+
+@dataclass(frozen=True, slots=True)
+class Weighed:
+    """Circuits of one number of resistors and one of capacitors, weighed.
+
+    Attributes
+    ----------
+    capacitors : number of capacitors. slots : the capacitor networks.
+    score : (n,) lower is better. slot : (n,) number of the capacitor network.
+    rows : the n resistor networks.
+    """
+
+    capacitors: int
+    slots: CapacitorSlots
+    score: Floats
+    slot: Ints
+    rows: Rows
+
+    def only(self, kept: NDArray[np.bool_] | Ints) -> Weighed:
+        """Return some of them."""
+        return Weighed(
+            self.capacitors, self.slots, self.score[kept], self.slot[kept], self.rows.take(kept)
+        )
+
+
+class BalancedSearch:
+    """One run; `pairings` gives the places.
+
+    Parameters
+    ----------
+    space : what there is to choose from. judge : weighs pairings exactly.
+    """
+
+    def __init__(self, space: Space, judge: Judge) -> None:
+        self._space = space
+        self._judge = judge
+        self._top = space.request.top
+        self._weigher = _Weigher(space)
+        self._weighed: list[Weighed] = []
+
+    def pairings(self) -> list[Pairing]:
+        """Return the pairings of lots that get the places, best first."""
+        last = inf
+        for level in self._space.levels():
+            slots = self._space.slots(level.capacitors)
+            if slots is not None and len(slots):
+                self._weigh(level, slots, last)
+                last = self._last_place()
+        return [self._pairing(weighed, row) for weighed, row in _places(self._weighed, self._top)]
+
+    def _weigh(self, level: Level, slots: CapacitorSlots, last: float) -> None:
+        """Weigh one level, but only where it could still get a place."""
+        floor = self._weigher.least_spread(slots) * PER_PART**level.parts
+        chosen = np.flatnonzero((floor < last) & (slots.least <= slots.most))
+        wishes = slots.wanted[chosen], slots.least[chosen], slots.most[chosen]
+        near = nearest(self._space.resistor_tables, level.resistors, *wishes, NEAREST)
+        near = Near(chosen[near.owner], near.rows)
+        score = self._weigher.score(near, slots, level.parts)
+        weighed = Weighed(level.capacitors, slots, score, near.owner, near.rows)
+        self._weighed.append(weighed.only(score <= last))
+
+    def _last_place(self) -> float:
+        """Return the score that a further circuit must beat; drop what no longer can."""
+        if not any(len(each.score) for each in self._weighed):
+            return inf
+        front = _front(self._weighed, self._top)
+        if len(front.score) < self._top:
+            return inf
+        last = float(np.partition(front.handicapped, self._top - 1)[self._top - 1])
+        self._weighed = [each.only(each.score <= last) for each in self._weighed]
+        return last
+
+    def _pairing(self, weighed: Weighed, row: int) -> Pairing:
+        slot = int(weighed.slot[row])
+        return self._judge.pairing(
+            weighed.rows.network(row),
+            weighed.slots.rows.network(slot),
+            float(weighed.slots.leak[slot]),
+        )
+
+
+class _Weigher:
+    """The spreads and shifts of the lots as arrays, and the score made from them."""
+
+    def __init__(self, space: Space) -> None:
+        self._request = space.request
+        self._drive: Drive = typical(space.request.timer, space.request.supply)
+        self._ohm, self._farad = space.resistors.value, space.capacitors.value
+        of_r, of_c = lot_tolerances(space.resistors), lot_tolerances(space.capacitors)
+        self._r_spread = np.array([tolerance.spread for tolerance in of_r])
+        self._r_shift = np.array([tolerance.shift for tolerance in of_r])
+        self._c_spread = np.array([tolerance.spread for tolerance in of_c])
+        self._c_shift = np.array([tolerance.shift for tolerance in of_c])
+
+    def least_spread(self, slots: CapacitorSlots) -> Floats:
+        """Return a spread that no circuit on a capacitor network can be below."""
+        spread = slots.rows.evaluate_shares(self._farad, self._c_spread, Join.PARALLEL)
+        return spread_of(1.0, self._r_spread.min(), spread, self._request.timer.timing_error_limit)
+
+    def score(self, near: Near, slots: CapacitorSlots, parts: int) -> Floats:
+        """Return the scores of some circuits of so many parts."""
+        rows, slot = near.rows, near.owner
+        farad, leak = slots.farad[slot], slots.leak[slot]
+        nominal = interval(rows.value, farad, leak, self._drive)
+        steep = sensitivity(rows.value, farad, leak, self._drive)
+        r_spread = rows.evaluate_shares(self._ohm, self._r_spread, Join.SERIES)
+        r_shift = rows.evaluate_shares(self._ohm, self._r_shift, Join.SERIES)
+        c_spread = slots.rows.evaluate_shares(self._farad, self._c_spread, Join.PARALLEL)[slot]
+        c_shift = slots.rows.evaluate_shares(self._farad, self._c_shift, Join.PARALLEL)[slot]
+        target = self._request.target
+        with np.errstate(invalid="ignore"):
+            mean = mean_of(nominal, steep, r_shift, c_shift)
+            spread = spread_of(steep, r_spread, c_spread, self._request.timer.timing_error_limit)
+            score = likely_miss(mean / target - 1, spread) * PER_PART**parts
+        outside = np.abs(nominal / target - 1) > self._request.within + SAME
+        # Scores are told apart to twelve digits, so that rounding cannot order equal circuits.
+        score = np.where(np.isfinite(score), np.minimum(score, OUTSIDE / 2), OUTSIDE / 2)
+        return np.asarray(np.round(score, 12) + OUTSIDE * outside)
+
+
+@dataclass(frozen=True, slots=True)
+class _Front:
+    """The circuits that may get a place: level, row, score and the same with the handicap."""
+
+    level: Ints
+    row: Ints
+    score: Floats
+    handicapped: Floats
+
+
+def _front(levels: list[Weighed], wanted: int) -> _Front:
+    """Gather the best scores of all levels, no two with the same parts, and handicap them."""
+    level = np.repeat(np.arange(len(levels)), [len(each.score) for each in levels])
+    row = np.concatenate([np.arange(len(each.score)) for each in levels])
+    score = np.concatenate([each.score for each in levels])
+    keep = 64 * wanted
+    while True:
+        best = np.argsort(score, kind="stable")[:keep]
+        best = best[_first_of_parts(levels, level[best], row[best])]
+        handicap = _handicap(levels, level[best], row[best])
+        whole = np.floor(score[best] / OUTSIDE) * OUTSIDE
+        handicapped = (score[best] - whole) * handicap + whole
+        enough = len(best) >= wanted and np.sort(handicapped)[wanted - 1] <= score[best[-1]]
+        if enough or keep >= len(score):
+            return _Front(level[best], row[best], score[best], handicapped)
+        keep *= 8
+
+
+def _first_of_parts(levels: list[Weighed], level: Ints, row: Ints) -> Ints:
+    """Return the places of the first circuit of each set of parts."""
+    seen: set[tuple[object, ...]] = set()
+    kept = []
+    for place, (number, index) in enumerate(zip(level.tolist(), row.tolist(), strict=True)):
+        weighed = levels[number]
+        leaves = tuple(sorted(weighed.rows.leaves[index].tolist()))
+        capacitors = tuple(sorted(weighed.slots.rows.leaves[weighed.slot[index]].tolist()))
+        if (leaves, capacitors) not in seen:
+            seen.add((leaves, capacitors))
+            kept.append(place)
+    return np.array(kept, dtype=np.int64)
+
+
+def _handicap(levels: list[Weighed], level: Ints, row: Ints) -> Floats:
+    """Return PER_VARIATION to the number of better fits on the same capacitor network."""
+    times: dict[tuple[int, int], int] = {}
+    handicap = []
+    for number, index in zip(level.tolist(), row.tolist(), strict=True):
+        key = (levels[number].capacitors, int(levels[number].slot[index]))
+        times[key] = times.get(key, -1) + 1
+        handicap.append(PER_VARIATION ** times[key])
+    return np.array(handicap)
+
+
+def _places(levels: list[Weighed], wanted: int) -> list[tuple[Weighed, int]]:
+    """Give away the places and return them in rank order."""
+    if not any(len(each.score) for each in levels):
+        return []
+    front = _front(levels, wanted)
+    chosen = np.argsort(front.handicapped, kind="stable")[:wanted]
+    chosen = chosen[np.argsort(front.score[chosen], kind="stable")]
+    return [(levels[front.level[place]], int(front.row[place])) for place in chosen]

@@ -1,0 +1,103 @@
+"""The few resistor networks nearest to each wanted resistance."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from chooser.search.pools import Floats, Ints
+from chooser.search.tables import Rows, Tables, every_network
+from chooser.search.windows import find_in_windows
+
+FIRST_WINDOW = 1e-3
+"""Relative width tried first where a size is not listed; those left short try ever wider."""
+
+
+@dataclass(frozen=True, slots=True)
+class Near:
+    """Networks near to what was wanted.
+
+    Attributes
+    ----------
+    owner : (n,) number of the wish. rows : the n networks.
+    """
+
+    owner: Ints
+    rows: Rows
+
+
+def nearest(
+    tables: Tables, size: int, wanted: Floats, least: Floats, most: Floats, count: int
+) -> Near:
+    """Find the networks of exactly `size` parts that lie nearest to each wanted value.
+
+    Parameters
+    ----------
+    tables : of the pool, in ohm.
+    size : parts in the network.
+    wanted : (w,) values in ohm. least, most : (w,) limits in ohm, both included.
+    count : how many for each.
+
+    Returns
+    -------
+    Up to `count` for each wish; fewer where no more lie within its limits.
+    """
+    if tables.listed(size):
+        near = _from_tables(every_network(tables, size), wanted, count)
+    else:
+        near = _from_windows(tables, size, (wanted, least, most), count)
+    value, owner = near.rows.value, near.owner
+    kept = np.flatnonzero((value >= least[owner]) & (value <= most[owner]))
+    return _cut(Near(owner[kept], near.rows.take(kept)), wanted, count)
+
+
+def _from_tables(listed: list[Rows], wanted: Floats, count: int) -> Near:
+    """Take `count` to either side of the wanted value from every table."""
+    owners: list[Ints] = []
+    pieces: list[Rows] = []
+    for table in listed:
+        place = np.searchsorted(table.value, wanted)
+        index = place[:, None] + np.arange(-count, count)[None, :]
+        owner, column = np.nonzero((index >= 0) & (index < len(table)))
+        owners.append(owner)
+        pieces.append(table.take(index[owner, column]))
+    return Near(np.concatenate(owners), Rows.concatenated(pieces))
+
+
+def _from_windows(
+    tables: Tables, size: int, wish: tuple[Floats, Floats, Floats], count: int
+) -> Near:
+    """Widen each wish's window until enough lie in it, or it is as wide as the limits."""
+    wanted, least, most = wish
+    smallest, largest = tables.singles.value[0] / size, tables.singles.value[-1] * size
+    least, most = np.maximum(least, smallest), np.minimum(most, largest)
+    open_ = np.flatnonzero(least <= most)
+    width = FIRST_WINDOW
+    owners: list[Ints] = [np.empty(0, dtype=np.int64)]
+    pieces: list[Rows] = [Rows.none(size)]
+    while len(open_):
+        low = np.maximum(wanted[open_] / (1 + width), least[open_])
+        high = np.minimum(wanted[open_] * (1 + width), most[open_])
+        found = list(find_in_windows(tables, size, low, high))
+        held = np.zeros(len(open_), dtype=np.int64)
+        for batch in found:
+            held += np.bincount(batch.window, minlength=len(open_))
+        done = (held >= count) | ((low <= least[open_]) & (high >= most[open_]))
+        for batch in found:
+            kept = np.flatnonzero(done[batch.window])
+            owners.append(open_[batch.window[kept]])
+            pieces.append(batch.rows.take(kept))
+        open_ = open_[~done]
+        width *= 4
+    return Near(np.concatenate(owners), Rows.concatenated(pieces))
+
+
+def _cut(near: Near, wanted: Floats, count: int) -> Near:
+    """Keep the `count` nearest of each owner; of equally near ones the first found."""
+    distance = np.abs(near.rows.value / wanted[near.owner] - 1)
+    order = np.lexsort((distance, near.owner))
+    owner = near.owner[order]
+    starts = np.searchsorted(owner, owner, "left")
+    kept = order[np.arange(len(owner)) - starts < count]
+    return Near(near.owner[kept], near.rows.take(kept))

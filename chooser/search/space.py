@@ -1,0 +1,114 @@
+"""The space that a request opens: pools, their tables, and the levels of it by parts."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass
+
+from chooser.parts import Holding
+from chooser.search.counting import networks_from, networks_from_polarised
+from chooser.search.pools import Pool, uses_of
+from chooser.search.request import Request, Rule
+from chooser.search.slots import (
+    CapacitorSlots,
+    capacitor_pool,
+    capacitor_slots,
+    is_polarised,
+    resistor_pool,
+)
+from chooser.search.tables import Tables
+
+MOST_LISTED = 150_000
+"""Groups of a resistor table that are listed; a larger one is split, because sorting costs more."""
+
+MOST_CAPACITOR_NETWORKS = 4_000_000
+"""Capacitor networks of one size that are listed; each wants a resistance of its own."""
+
+
+@dataclass(frozen=True, slots=True)
+class Level:
+    """A part of the space: circuits of so many resistors and so many capacitors."""
+
+    resistors: int
+    capacitors: int
+
+    @property
+    def parts(self) -> int:
+        """Parts in all."""
+        return self.resistors + self.capacitors
+
+
+class Space:
+    """What there is to choose from.
+
+    Parameters
+    ----------
+    resistors, capacitors : usable holdings.
+    request : what is asked.
+
+    Attributes
+    ----------
+    limit : what could not be covered and why, or "".
+    """
+
+    def __init__(
+        self, resistors: Sequence[Holding], capacitors: Sequence[Holding], request: Request
+    ) -> None:
+        self.request = request
+        self.limit = ""
+        self.resistors: Pool = resistor_pool(resistors, request)
+        self.capacitors: Pool = capacitor_pool(capacitors, request)
+        self.resistor_tables = Tables(self.resistors.adding, self.resistors.uses, MOST_LISTED)
+        self._capacitor_tables = Tables(
+            self.capacitors.adding, self.capacitors.uses, MOST_CAPACITOR_NETWORKS
+        )
+        self._slots: dict[int, CapacitorSlots | None] = {}
+
+    def levels(self) -> Iterator[Level]:
+        """Yield the levels, rising in parts; among equals the fewer capacitors first."""
+        most = self.request.most_resistors, self.request.most_capacitors
+        for parts in range(2, sum(most) + 1):
+            for capacitors in range(1, min(most[1], parts - 1) + 1):
+                if parts - capacitors <= most[0]:
+                    yield Level(parts - capacitors, capacitors)
+
+    def slots(self, capacitors: int) -> CapacitorSlots | None:
+        """Return the capacitor networks of a size, or None, and note it, where they are too many."""
+        if capacitors not in self._slots:
+            count = self._capacitor_tables.count(capacitors)
+            if count > MOST_CAPACITOR_NETWORKS:
+                self.limit = (
+                    f"{count:,} networks of {capacitors} capacitors are too many to list; "
+                    "circuits with fewer capacitors are covered"
+                )
+                self._slots[capacitors] = None
+            else:
+                self._slots[capacitors] = capacitor_slots(
+                    self.capacitors, self._capacitor_tables, capacitors, self.request
+                )
+        return self._slots[capacitors]
+
+
+def combinations(
+    resistors: Sequence[Holding], capacitors: Sequence[Holding], request: Request
+) -> int:
+    """Count the circuits of the space by formula.
+
+    Parameters
+    ----------
+    resistors, capacitors : usable holdings.
+    request : its boards divide the counts, its most_resistors and most_capacitors bound the size.
+    """
+    ohms = [uses_of(holding, request.boards) for holding in resistors]
+    farads = [holding for holding in capacitors if uses_of(holding, request.boards)]
+    apart = Rule.POLARISED_SERIES not in request.lifted
+    polar = [h for h in farads if apart and is_polarised(h.part)]
+    free = [h for h in farads if not (apart and is_polarised(h.part))]
+    free_uses = [uses_of(holding, request.boards) for holding in free]
+    polar_uses = [uses_of(holding, request.boards) for holding in polar]
+    return sum(
+        networks_from(ohms, size) for size in range(1, request.most_resistors + 1)
+    ) * sum(
+        networks_from_polarised(free_uses, polar_uses, size)
+        for size in range(1, request.most_capacitors + 1)
+    )

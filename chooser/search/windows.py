@@ -1,0 +1,254 @@
+"""Every network whose value lies in a window, for many windows at once, without listing the rest.
+
+A table answers by binary search.  A size too large to list is split at its root instead: for
+each head (one part, or a small group) the partner's value must lie in the window less the head,
+which is again a window, in the table or the split of the smaller size.  In a series group the
+window moves in ohms, in a parallel group in siemens.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterator
+from dataclasses import dataclass
+from functools import partial
+
+import numpy as np
+
+from chooser.networks import Join
+from chooser.search.pools import Floats, Ints
+from chooser.search.sieve import NARROW, WORTH, Sieve, sieved_pairs
+from chooser.search.tables import Rows, Tables, joined, ranks_no_lower
+
+MOST_PAIRS = 1 << 20
+"""Head-and-window pairs worked on at once: bounds the memory, about 100 bytes each."""
+
+ROUNDING = 1e-12
+"""Windows are widened by this, relative: a thousand times the rounding of a few float sums."""
+
+
+@dataclass(frozen=True, slots=True)
+class Found:
+    """Networks found, each with the window it lies in.
+
+    Attributes
+    ----------
+    window : (n,) number of the window.
+    rows : the n networks.
+    """
+
+    window: Ints
+    rows: Rows
+
+
+def find_in_windows(tables: Tables, size: int, low: Floats, high: Floats) -> Iterator[Found]:
+    """Find all networks of exactly `size` parts in each window.
+
+    Parameters
+    ----------
+    tables : tables of the pool; values add under `+`.
+    size : parts in the network.
+    low, high : (w,) ends of the windows, both included, in the pool's unit; low > high is empty.
+
+    Yields
+    ------
+    Batches; every network of every window is in exactly one of them.  Values within ROUNDING
+    outside a window may be found too.
+
+    Notes
+    -----
+    For w windows and n parts: O(w log n) where the size is listed, O(w n log n) one size above.
+    """
+    low, high = low * (1 - ROUNDING), high * (1 + ROUNDING)
+    if tables.listed(size):
+        for table in _tables_of(tables, size):
+            yield from _in_table(table, low, high)
+        return
+    for join in Join:
+        yield from _in_groups(tables, size, join, low, high)
+
+
+def count_in_windows(tables: Tables, size: int, low: Floats, high: Floats) -> int | None:
+    """Count what lies in the windows where that is cheap; None where the size is not listed."""
+    if not tables.listed(size):
+        return None
+    total = 0
+    for table in _tables_of(tables, size):
+        first = np.searchsorted(table.value, low, "left")
+        last = np.searchsorted(table.value, high, "right")
+        total += int(np.maximum(last - first, 0).sum())
+    return total
+
+
+def _tables_of(tables: Tables, size: int) -> list[Rows]:
+    if size == 1:
+        return [tables.singles]
+    return [tables.groups(size, join) for join in Join]
+
+
+def _in_table(table: Rows, low: Floats, high: Floats) -> Iterator[Found]:
+    first = np.searchsorted(table.value, low, "left")
+    last = np.searchsorted(table.value, high, "right")
+    for window, row in ragged(first, last):
+        if len(window):
+            yield Found(window, table.take(row))
+
+
+def _in_groups(
+    tables: Tables, size: int, join: Join, low: Floats, high: Floats
+) -> Iterator[Found]:
+    """Find the groups of one join in each window, listed or split at the root."""
+    if tables.listed(size):
+        yield from _in_table(tables.groups(size, join), low, high)
+        return
+    for head_size in range(1, size // 2 + 1):
+        rest_size = size - head_size
+        heads = tables.children(head_size, join)
+        if head_size == rest_size:
+            yield from _same_table(tables, join, heads, low, high)
+            continue
+        # Beside the head stands another child, or a group of two or more that rank no lower.
+        rests = [join.dual, join] if rest_size >= 2 * head_size else [join.dual]
+        for rest_join in rests:
+            listed = tables.listed(rest_size)
+            if listed and not len(tables.groups(rest_size, rest_join)):
+                continue
+            rest = partial(tables.sieve, rest_size, rest_join) if listed else None
+            for window, head in _promising(heads, join, low, high, rest):
+                bounds = _partner_windows(join, heads.value[head], low[window], high[window])
+                partners = _in_groups(tables, rest_size, rest_join, *bounds)
+                ranked = rest_join is join
+                yield from _completed(tables, join, heads, window, head, partners, ranked=ranked)
+
+
+def _completed(
+    tables: Tables,
+    join: Join,
+    heads: Rows,
+    window: Ints,
+    head: Ints,
+    partners: Iterator[Found],
+    *,
+    ranked: bool,
+) -> Iterator[Found]:
+    """Join heads to the partners found for them; `ranked` where the partner is a group."""
+    for found in partners:
+        rights = np.arange(len(found.rows), dtype=np.int64)
+        lefts = head[found.window]
+        if ranked:
+            fitting = ranks_no_lower(found.rows, rights, heads.size, lefts)
+            rights, lefts = rights[fitting], lefts[fitting]
+        kept, rows = joined(join, heads, lefts, found.rows, rights, tables.uses)
+        if len(kept):
+            yield Found(window[found.window[rights[kept]]], rows)
+
+
+def _same_table(
+    tables: Tables, join: Join, table: Rows, low: Floats, high: Floats
+) -> Iterator[Found]:
+    """Join two children of one table; only the one that rules the value is looped over.
+
+    In series the larger child is at least half the whole, in parallel the smaller one at most
+    twice the whole, so the loop runs over one octave of the table instead of over all of it.
+    """
+    if join is Join.SERIES:
+        first = np.searchsorted(table.value, low / 2, "left")
+        last = np.searchsorted(table.value, high, "right")
+    else:
+        first = np.searchsorted(table.value, low, "left")
+        last = np.searchsorted(table.value, 2 * high, "right")
+    for window, ruling in ragged(first, last):
+        bounds = _partner_windows(join, table.value[ruling], low[window], high[window])
+        start = np.searchsorted(table.value, bounds[0], "left")
+        stop = np.searchsorted(table.value, bounds[1], "right")
+        if join is Join.SERIES:
+            stop = np.minimum(stop, ruling + 1)
+        else:
+            start = np.maximum(start, ruling)
+        for owner, other in ragged(start, stop):
+            lower, upper = np.minimum(ruling[owner], other), np.maximum(ruling[owner], other)
+            kept, rows = joined(join, table, lower, table, upper, tables.uses)
+            if len(kept):
+                yield Found(window[owner[kept]], rows)
+
+
+def _promising(
+    heads: Rows, join: Join, low: Floats, high: Floats, rest: Callable[[Join], Sieve] | None
+) -> Iterator[tuple[Ints, Ints]]:
+    """Pair each window with the heads that leave room for a partner, maybe with one there.
+
+    Parameters
+    ----------
+    rest : the sieve of the table that the partner must come from, in ohms or siemens; None
+        where it is not listed.
+    """
+    if join is Join.SERIES:
+        first = np.zeros(len(low), dtype=np.int64)
+        last = np.searchsorted(heads.value, high, "left")
+        bases, needs = low, (high - low) / NARROW
+        narrow = needs < low / 2
+    else:
+        first = np.searchsorted(heads.value, low, "right")
+        last = np.full(len(low), len(heads), dtype=np.int64)
+        with np.errstate(divide="ignore", invalid="ignore"):
+            bases, needs = 1 / high, (1 / low - 1 / high) / NARROW
+        narrow = needs < bases / 2
+    if rest is None or int(np.count_nonzero(narrow)) * len(heads) < WORTH:
+        yield from ragged(first, last)
+        return
+    # Heads that leave a partner too small for the sieve, in the unit that adds, are few.
+    if join is Join.SERIES:
+        middle = np.searchsorted(heads.value, np.where(narrow, low - needs, 0.0), "right")
+        yield from ragged(middle, last)
+        shifts = heads.value
+    else:
+        middle = np.searchsorted(
+            heads.value, np.where(narrow, 1 / np.where(narrow, bases - needs, 1.0), np.inf), "left"
+        )
+        yield from ragged(first, middle)
+        shifts = 1 / heads.value
+    for window, head in sieved_pairs(rest(join), bases, shifts):
+        sure = head < middle[window] if join is Join.SERIES else head >= middle[window]
+        sure &= narrow[window]
+        if sure.any():
+            yield window[sure], head[sure]
+
+
+def _partner_windows(
+    join: Join, head: Floats, low: Floats, high: Floats
+) -> tuple[Floats, Floats]:
+    """Take the heads out of their windows: in ohms for a series, in siemens for a parallel group."""
+    if join is Join.SERIES:
+        return np.maximum(low - head, 0.0), high - head
+    with np.errstate(divide="ignore"):
+        most = 1 / high - 1 / head
+        least = 1 / low - 1 / head
+        return (
+            np.where(least > 0, 1 / np.where(least > 0, least, 1), np.inf),
+            np.where(most > 0, 1 / np.where(most > 0, most, 1), np.inf),
+        )
+
+
+def ragged(first: Ints, last: Ints) -> Iterator[tuple[Ints, Ints]]:
+    """Lay out ranges of unequal length, in batches of about MOST_PAIRS.
+
+    Parameters
+    ----------
+    first, last : (w,) ends of each range, last excluded; last <= first is empty.
+
+    Yields
+    ------
+    The number of the range and the item, for every item of every range, in order.
+    """
+    lengths = np.maximum(last - first, 0)
+    ends = np.cumsum(lengths)
+    start = 0
+    while start < len(lengths):
+        done = int(ends[start - 1]) if start else 0
+        stop = max(int(np.searchsorted(ends, done + MOST_PAIRS, "right")), start + 1)
+        part = lengths[start:stop]
+        owner = np.repeat(np.arange(start, stop, dtype=np.int64), part)
+        offset = np.arange(len(owner), dtype=np.int64) - np.repeat(ends[start:stop] - part - done, part)
+        yield owner, first[owner] + offset
+        start = stop
+
+

@@ -1,0 +1,1 @@
+"""Stock sheets: untrusted CSV and XLSX files in, entries or findings out."""
