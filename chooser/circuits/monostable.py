@@ -209,6 +209,24 @@ def limits(timer: Timer, supply: float) -> tuple[float, float]:
     return least, min(most, MOST_OHM)
 
 
+def endless_from(g: ArrayLike, drive: Drive) -> Array:
+    """Return the resistance from which on the interval never ends.
+
+    Parameters
+    ----------
+    g : leak conductance in siemens, any shape. drive : state of the timer.
+
+    Returns
+    -------
+    Ohm, of the same shape: (1 - a) / (I / V + a G), infinity without losses.
+    """
+    g = np.asarray(g, dtype=np.float64)
+    if drive.ideal:
+        return np.full(g.shape, inf)
+    with np.errstate(divide="ignore"):
+        return np.asarray((1.0 - drive.threshold) / _loss(g, drive))
+
+
 def trip_ratio(r: float, g: float, drive: Drive) -> float:
     """Return the charging current at the trip point over all losses there (dimensionless).
 

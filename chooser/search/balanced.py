@@ -5,8 +5,8 @@ weighed.  Most need not even be looked at: a circuit's spread is at least that o
 and its best resistor, so where that alone, weighted by the parts, is no better than the last
 place, nothing is lost by skipping it.
 
-The list is kept various: each further fit on the same capacitor network counts as a tenth worse
-than it is when places are given away.
+The list is kept various: each further fit on the same main capacitor (the one with the greatest
+share of the capacitance) counts as half as bad again as it is when places are given away.
 """
 
 from __future__ import annotations
@@ -34,8 +34,8 @@ NEAREST = 8
 PER_PART = 1.10
 """Each extra part must cut the likely miss by this factor to earn its place."""
 
-PER_VARIATION = 1.10
-"""Each further fit on the same capacitors must be better by this factor to get a place."""
+PER_VARIATION = 1.50
+"""Each further fit on the same main capacitor must be better by this factor to get a place."""
 
 OUTSIDE = 1e6
 """Added to the score outside the band: every fit inside comes first; scores stay far below."""
@@ -47,12 +47,11 @@ class Weighed:
 
     Attributes
     ----------
-    capacitors : number of capacitors. slots : the capacitor networks.
+    slots : the capacitor networks.
     score : (n,) lower is better. slot : (n,) number of the capacitor network.
     rows : the n resistor networks.
     """
 
-    capacitors: int
     slots: CapacitorSlots
     score: Floats
     slot: Ints
@@ -60,9 +59,7 @@ class Weighed:
 
     def only(self, kept: NDArray[np.bool_] | Ints) -> Weighed:
         """Return some of them."""
-        return Weighed(
-            self.capacitors, self.slots, self.score[kept], self.slot[kept], self.rows.take(kept)
-        )
+        return Weighed(self.slots, self.score[kept], self.slot[kept], self.rows.take(kept))
 
 
 class BalancedSearch:
@@ -92,13 +89,13 @@ class BalancedSearch:
 
     def _weigh(self, level: Level, slots: CapacitorSlots, last: float) -> None:
         """Weigh one level, but only where it could still get a place."""
-        floor = self._weigher.least_spread(slots) * PER_PART**level.parts
+        floor = self._weigher.least_score(slots, level.parts)
         chosen = np.flatnonzero((floor < last) & (slots.least <= slots.most))
         wishes = slots.wanted[chosen], slots.least[chosen], slots.most[chosen]
         near = nearest(self._space.resistor_tables, level.resistors, *wishes, NEAREST)
         near = Near(chosen[near.owner], near.rows)
         score = self._weigher.score(near, slots, level.parts)
-        weighed = Weighed(level.capacitors, slots, score, near.owner, near.rows)
+        weighed = Weighed(slots, score, near.owner, near.rows)
         self._weighed.append(weighed.only(score <= last))
 
     def _last_place(self) -> float:
@@ -134,10 +131,23 @@ class _Weigher:
         self._c_spread = np.array([tolerance.spread for tolerance in of_c])
         self._c_shift = np.array([tolerance.shift for tolerance in of_c])
 
-    def least_spread(self, slots: CapacitorSlots) -> Floats:
-        """Return a spread that no circuit on a capacitor network can be below."""
-        spread = slots.rows.evaluate_shares(self._farad, self._c_spread, Join.PARALLEL)
-        return spread_of(1.0, self._r_spread.min(), spread, self._request.timer.timing_error_limit)
+    def least_score(self, slots: CapacitorSlots, parts: int) -> Floats:
+        """Return a score that no circuit of so many parts on a capacitor network can be below.
+
+        The spread is at least that of the capacitors and the best resistor. Where the wanted
+        resistance lies outside its limits, the interval misses by at least as much as it does,
+        because the interval grows at least in proportion to R.
+        """
+        request = self._request
+        c_spread = slots.rows.evaluate_shares(self._farad, self._c_spread, Join.PARALLEL)
+        spread = spread_of(1.0, self._r_spread.min(), c_spread, request.timer.timing_error_limit)
+        short, long = slots.most / slots.wanted, slots.least / slots.wanted
+        outside = (short < 1 - request.within - SAME) | (long > 1 + request.within + SAME)
+        if self._r_shift.any() or self._c_shift.any():
+            miss: Floats = spread  # the mean may be nearer than the nominal interval
+        else:
+            miss = likely_miss(np.maximum(np.maximum(1 - short, long - 1), 0.0), spread)
+        return np.minimum(miss * PER_PART**parts, OUTSIDE / 2) * (1 - SAME) + OUTSIDE * outside
 
     def score(self, near: Near, slots: CapacitorSlots, parts: int) -> Floats:
         """Return the scores of some circuits of so many parts."""
@@ -202,14 +212,15 @@ def _first_of_parts(levels: list[Weighed], level: Ints, row: Ints) -> Ints:
     return np.array(kept, dtype=np.int64)
 
 
-def _handicap(levels: list[Weighed], level: Ints, row: Ints) -> Floats:
-    """Return PER_VARIATION to the number of better fits on the same capacitor network."""
-    times: dict[tuple[int, int], int] = {}
+def _handicap(weighed: list[Weighed], level: Ints, row: Ints) -> Floats:
+    """Return PER_VARIATION to the number of better fits on the same main capacitor."""
+    times: dict[int, int] = {}
     handicap = []
     for number, index in zip(level.tolist(), row.tolist(), strict=True):
-        key = (levels[number].capacitors, int(levels[number].slot[index]))
-        times[key] = times.get(key, -1) + 1
-        handicap.append(PER_VARIATION ** times[key])
+        each = weighed[number]
+        main = int(each.slots.main[each.slot[index]])
+        times[main] = times.get(main, -1) + 1
+        handicap.append(PER_VARIATION ** times[main])
     return np.array(handicap)
 
 

@@ -19,7 +19,7 @@ from math import inf
 import numpy as np
 from numpy.typing import NDArray
 
-from chooser.circuits.monostable import interval, typical
+from chooser.circuits.monostable import interval, resistance, typical
 from chooser.networks import Network
 from chooser.search.pools import Floats, Ints
 from chooser.search.ranking import PPM, Judge, Pairing, order_key
@@ -31,6 +31,9 @@ from chooser.search.windows import ROUNDING, Found, find_in_windows
 
 SAME = 1e-12
 """Errors nearer to each other than this are left to the exact comparison."""
+
+LARGE = 0.02
+"""Errors from here on have their windows from the inverse instead of from the growth."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -100,9 +103,8 @@ class ExactSearch:
 
     def _search(self, level: Level, slots: CapacitorSlots) -> None:
         bound = self._bound(level.parts)
-        scene = _Scene(self._space, level.resistors, slots)
-        pairs = scene.within(bound + SAME) if bound < inf else scene.widened()
-        self._keep(pairs.best(self._request.top), slots)
+        pairs = _Scene(self._space, level.resistors, slots).best(bound + SAME)
+        self._keep(pairs, slots)
 
     def _keep(self, pairs: Pairs, slots: CapacitorSlots) -> None:
         networks: dict[int, Network[int]] = {}
@@ -134,11 +136,22 @@ class _Scene:
         self._least = np.maximum(slots.least, ohm[0] / size)
         self._most = np.minimum(slots.most, ohm[-1] * size)
 
-    def within(self, error: float) -> Pairs:
-        """Return the best pairs whose error is at most `error`; all of them if they are few."""
-        slots = self._slots
-        low = np.maximum(slots.wanted * (1 - error), self._least)
-        high = np.minimum(slots.wanted * (1 + error), self._most)
+    def best(self, bound: float) -> Pairs:
+        """Return the best pairs with an error of at most `bound`, ties at the last place included.
+
+        It looks ever wider, because a first few good pairs spare it most of the window.
+        """
+        pairs = Pairs(np.empty(0), np.empty(0, dtype=np.int64), Rows.none(self._size))
+        for error in self._steps(bound):
+            pairs = self._within(error)
+            if len(pairs) >= self._top:
+                break
+        return pairs
+
+    def _within(self, error: float) -> Pairs:
+        """Return the best pairs of those with an error of at most `error`."""
+        low, high = self._window(error)
+        low, high = np.maximum(low, self._least), np.minimum(high, self._most)
         chosen = np.flatnonzero(low <= high)
         pairs = Pairs(np.empty(0), np.empty(0, dtype=np.int64), Rows.none(self._size))
         for found in find_in_windows(self._tables, self._size, low[chosen], high[chosen]):
@@ -146,47 +159,49 @@ class _Scene:
             pairs = _merged(pairs, new.only(new.error <= error)).best(self._top)
         return pairs
 
-    def widened(self) -> Pairs:
-        """Return the best pairs whatever their error, looking ever wider until there are enough."""
-        pairs = Pairs(np.empty(0), np.empty(0, dtype=np.int64), Rows.none(self._size))
-        for error in self._steps():
-            pairs = self.within(error)
-            if len(pairs) >= self._top:
-                break
-        return pairs
+    def _window(self, error: float) -> tuple[Floats, Floats]:
+        """Return ends in ohm between which every R lies whose error is at most `error`.
+
+        For small errors they follow from the growth in proportion; for large ones that would be
+        far too wide near the end of what the losses allow, and the circuit's inverse gives them.
+        """
+        slots = self._slots
+        if error < LARGE:
+            return slots.wanted * (1 - error), slots.wanted * (1 + error)
+        high = resistance(self._target * (1 + error), slots.farad, slots.leak, self._drive)
+        if error >= 1:
+            return np.zeros(len(slots)), high
+        return resistance(self._target * (1 - error), slots.farad, slots.leak, self._drive), high
 
     def _weighed(self, found: Found, slot: Ints) -> Pairs:
         farad, leak = self._slots.farad[slot], self._slots.leak[slot]
         times = interval(found.rows.value, farad, leak, self._drive)
         return Pairs(np.abs(times / self._target - 1), slot, found.rows)
 
-    def _steps(self) -> Iterator[float]:
-        """Yield rising errors to try; the last one covers everything.
+    def _error_at(self, ohm: Floats) -> Floats:
+        """Return the error, with its sign, that each capacitor network makes with a resistance."""
+        times = interval(ohm, self._slots.farad, self._slots.leak, self._drive)
+        return np.asarray(times / self._target - 1)
 
-        The first is guessed from how densely the pairs would lie if they were spread evenly over
-        the octaves between the ends, but is at least what the nearest network in reach needs.
+    def _steps(self, bound: float) -> Iterator[float]:
+        """Yield rising errors to try; the last one is the bound, or covers everything.
+
+        The first is what the nearest network in reach needs, and a little more: as much as would
+        do if the pairs were spread evenly over the octaves between the ends.
         """
-        wanted = self._slots.wanted
-        need = np.maximum(self._least / wanted - 1, 1 - self._most / wanted)
         open_ = self._least <= self._most
         if not open_.any():
             return
+        need = np.maximum(self._error_at(self._least), -self._error_at(self._most))[open_]
+        nearest = max(float(need.min()), 0.0) * (1 + ROUNDING)
         octaves = float(np.log(self._most[open_] / self._least[open_]).max()) + 1
-        pairs = self._tables.count(self._size) * len(wanted)
-        error = min(4 * self._top * octaves / max(pairs, 1), 0.5)
-        error = max(error, float(need[open_].min()) * (1 + ROUNDING))
-        everything = max(1.0, float((self._most / wanted)[open_].max()))
-        while error < everything:
-            yield error
-            error = min(error * 8, 0.5) if error < 0.5 else _further(error)  # noqa: PLR2004
-        yield everything
-
-
-def _further(error: float) -> float:
-    """Step an error of a half or more: halve what remains to 1, then double."""
-    if error >= 1:
-        return 2 * error
-    return (1 + error) / 2 if error < 1 - 1e-6 else 1.0
+        pairs = self._tables.count(self._size) * len(open_)
+        step = 4 * self._top * octaves / max(pairs, 1) * (1 - nearest if nearest < 1 else nearest)
+        last = min(bound, max(1.0, float(self._error_at(self._most)[open_].max()) * (1 + ROUNDING)))
+        while nearest + step < last:
+            yield nearest + step
+            step *= 8
+        yield last
 
 
 def _merged(one: Pairs, other: Pairs) -> Pairs:

@@ -121,6 +121,6 @@ def _balanced_reason(fit: Fit, after: Fit) -> str:
     if parts < parts_after:
         return (
             f"likely miss {miss} with {parts} parts; {miss_after} with {parts_after} does not earn "
-            f"{format_percent(PER_PART - 1)} for each more"
+            f"{format_percent(PER_PART - 1, digits=2)} for each more"
         )
     return f"likely miss {miss} with {parts} parts against {miss_after} with {parts_after}"

@@ -10,9 +10,8 @@ from chooser.search.pools import Floats, Ints
 from chooser.search.tables import Rows, Tables, every_network
 from chooser.search.windows import find_in_windows
 
-FIRST_WINDOW = 1e-3
-"""Relative width tried first where a size is not listed; those left short try ever wider."""
-
+WISHES_AT_ONCE = 2048
+"""Wishes worked on together where a size is not listed: bounds the memory."""
 
 @dataclass(frozen=True, slots=True)
 class Near:
@@ -43,10 +42,12 @@ def nearest(
     -------
     Up to `count` for each wish; fewer where no more lie within its limits.
     """
+    # A wish outside its limits is nearest to whatever is nearest to the limit.
+    near_wish = np.clip(wanted, least, most)
     if tables.listed(size):
-        near = _from_tables(every_network(tables, size), wanted, count)
+        near = _from_tables(every_network(tables, size), near_wish, count)
     else:
-        near = _from_windows(tables, size, (wanted, least, most), count)
+        near = _from_windows(tables, size, (near_wish, least, most), count)
     value, owner = near.rows.value, near.owner
     kept = np.flatnonzero((value >= least[owner]) & (value <= most[owner]))
     return _cut(Near(owner[kept], near.rows.take(kept)), wanted, count)
@@ -72,24 +73,27 @@ def _from_windows(
     wanted, least, most = wish
     smallest, largest = tables.singles.value[0] / size, tables.singles.value[-1] * size
     least, most = np.maximum(least, smallest), np.minimum(most, largest)
-    open_ = np.flatnonzero(least <= most)
-    width = FIRST_WINDOW
     owners: list[Ints] = [np.empty(0, dtype=np.int64)]
     pieces: list[Rows] = [Rows.none(size)]
-    while len(open_):
-        low = np.maximum(wanted[open_] / (1 + width), least[open_])
-        high = np.minimum(wanted[open_] * (1 + width), most[open_])
-        found = list(find_in_windows(tables, size, low, high))
-        held = np.zeros(len(open_), dtype=np.int64)
-        for batch in found:
-            held += np.bincount(batch.window, minlength=len(open_))
-        done = (held >= count) | ((low <= least[open_]) & (high >= most[open_]))
-        for batch in found:
-            kept = np.flatnonzero(done[batch.window])
-            owners.append(open_[batch.window[kept]])
-            pieces.append(batch.rows.take(kept))
-        open_ = open_[~done]
-        width *= 4
+    # A quarter of the width that would do if the networks were spread evenly over the octaves.
+    first = count * float(np.log(largest / smallest)) / tables.count(size) / 4
+    for start in range(0, len(wanted), WISHES_AT_ONCE):
+        open_ = start + np.flatnonzero((least <= most)[start : start + WISHES_AT_ONCE])
+        width = first
+        while len(open_):
+            low = np.maximum(wanted[open_] / (1 + width), least[open_])
+            high = np.minimum(wanted[open_] * (1 + width), most[open_])
+            found = list(find_in_windows(tables, size, low, high))
+            held = np.zeros(len(open_), dtype=np.int64)
+            for batch in found:
+                held += np.bincount(batch.window, minlength=len(open_))
+            done = (held >= count) | ((low <= least[open_]) & (high >= most[open_]))
+            for batch in found:
+                kept = np.flatnonzero(done[batch.window])
+                owners.append(open_[batch.window[kept]])
+                pieces.append(batch.rows.take(kept))
+            open_ = open_[~done]
+            width *= 4
     return Near(np.concatenate(owners), Rows.concatenated(pieces))
 
 

@@ -21,7 +21,8 @@ WORTH = 50_000
 """Fewer windows than this are searched faster than sieved."""
 
 _SHIFT = 52 - BITS
-_CHUNK = 1 << 16  # windows mapped at once: their floats stay in the cache
+_BATCH = 1 << 18  # pairs handed on together: a few large batches cost less than many small ones
+_WINDOWS = 128  # mapped at once: their floats stay in the cache, and near windows share shifts
 
 
 class Sieve:
@@ -29,13 +30,14 @@ class Sieve:
 
     Parameters
     ----------
-    values : (n,) values > 0, in any order, n >= 1.
+    values : (n,) values > 0, in any order.
     """
 
     def __init__(self, values: Floats) -> None:
         buckets = values.view(np.int64) >> _SHIFT
-        self._base = int(buckets.min()) - 2
-        self._occupied = np.zeros(int(buckets.max()) - self._base + 2, dtype=np.bool_)
+        self._base = int(buckets.min(initial=np.iinfo(np.int64).max)) - 2
+        last = int(buckets.max(initial=self._base))
+        self._occupied = np.zeros(last - self._base + 2, dtype=np.bool_)
         self._occupied[buckets - self._base] = True
         self._occupied[buckets - self._base - 1] = True
 
@@ -62,22 +64,38 @@ NARROW = 2.0 ** -(BITS + 1)
 """Greatest relative width of a window for which the sieve's answer holds."""
 
 
-def sieved_pairs(sieve: Sieve, bases: Floats, shifts: Floats) -> Iterator[tuple[Ints, Ints]]:
+def sieved_pairs(
+    sieve: Sieve, bases: Floats, shifts: Floats, first: Ints, last: Ints
+) -> Iterator[tuple[Ints, Ints]]:
     """Yield the pairs of a window and a shift whose shifted window may hold a value.
 
     Parameters
     ----------
     sieve : of the table searched.
-    bases : (w,) lower ends of the windows. shifts : (h,) amounts to take off them.
+    bases : (w,) lower ends of the windows; windows near in value should stand together.
+    shifts : (h,) amounts to take off them.
+    first, last : (w,) range of the shifts to look at for each window, last excluded.
 
     Yields
     ------
     Numbers of windows and of shifts, in batches. The answer holds for the pairs whose shifted
     window starts at its absolute width / NARROW or above.
     """
-    step = max(_CHUNK // max(len(shifts), 1), 1)
-    for start in range(0, len(bases), step):
-        hits = sieve.may_hold(bases[start : start + step, None] - shifts[None, :])
+    windows: list[Ints] = []
+    found: list[Ints] = []
+    for start in range(0, len(bases), _WINDOWS):
+        chunk = slice(start, start + _WINDOWS)
+        left, right = int(first[chunk].min()), int(last[chunk].max())
+        if left >= right:
+            continue
+        hits = sieve.may_hold(bases[chunk, None] - shifts[None, left:right])
         window, shift = np.nonzero(hits)
-        if len(window):
-            yield window + start, shift
+        window, shift = window + start, shift + left
+        inside = (shift >= first[window]) & (shift < last[window])
+        windows.append(window[inside])
+        found.append(shift[inside])
+        if sum(map(len, windows)) > _BATCH:
+            yield np.concatenate(windows), np.concatenate(found)
+            windows, found = [], []
+    if windows:
+        yield np.concatenate(windows), np.concatenate(found)

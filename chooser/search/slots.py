@@ -10,7 +10,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from chooser.circuits.leakage import leak_conductance
-from chooser.circuits.monostable import resistance, typical
+from chooser.circuits.monostable import endless_from, resistance, typical
 from chooser.networks import Group, Join, Leaf
 from chooser.parts import Holding, Part, Tolerance
 from chooser.search.house_rules import LEAST_FARAD, leak_bound, resistor_limits
@@ -65,6 +65,7 @@ class CapacitorSlots:
     farad, leak : (n,) capacitance in farad and typical leak conductance in siemens.
     wanted : (n,) resistance in ohm that makes the target interval exactly.
     least, most : (n,) resistances in ohm that the house rules allow.
+    main : (n,) number of the lot with the greatest share of the capacitance.
     """
 
     rows: Rows
@@ -73,6 +74,7 @@ class CapacitorSlots:
     wanted: Floats
     least: Floats
     most: Floats
+    main: NDArray[np.int32]
 
     def __len__(self) -> int:
         return len(self.farad)
@@ -106,11 +108,25 @@ def _slots(rows: Rows, pool: Pool, leaks: Floats, request: Request) -> Capacitor
     farad = rows.evaluate(pool.value, Join.PARALLEL)
     leak = rows.evaluate(leaks, Join.PARALLEL)
     least, most = resistor_limits(request)
-    bounds = np.full(len(rows), most)
+    # An interval that never ends is no answer, whatever rule is lifted.
+    bounds = np.minimum(most, endless_from(leak, drive) * (1 - 1e-12))
     if Rule.RESISTOR_LIMITS not in request.lifted and not request.timer.ideal:
         bounds = np.minimum(bounds, leak_bound(leak, drive))
     wanted = resistance(request.target, farad, leak, drive)
-    return CapacitorSlots(rows, farad, leak, wanted, np.full(len(rows), least), bounds)
+    main = _main_lots(rows, pool.value)
+    return CapacitorSlots(rows, farad, leak, wanted, np.full(len(rows), least), bounds, main)
+
+
+def _main_lots(rows: Rows, farad: Floats) -> NDArray[np.int32]:
+    """Return the lot that rules each network: the largest in parallel, the smallest in series."""
+    main = np.empty(len(rows), dtype=np.int32)
+    for number, shape in enumerate(rows.shapes):
+        chosen = np.flatnonzero(rows.shape == number)
+        leaves = rows.leaves[chosen]
+        series = isinstance(shape, Group) and shape.join is Join.SERIES
+        column = (np.argmin if series else np.argmax)(farad[leaves], axis=1)
+        main[chosen] = leaves[np.arange(len(chosen)), column]
+    return main
 
 
 def _together(pieces: Sequence[CapacitorSlots]) -> CapacitorSlots:
@@ -123,6 +139,7 @@ def _together(pieces: Sequence[CapacitorSlots]) -> CapacitorSlots:
         np.concatenate([piece.wanted for piece in pieces]),
         np.concatenate([piece.least for piece in pieces]),
         np.concatenate([piece.most for piece in pieces]),
+        np.concatenate([piece.main for piece in pieces]),
     )
 
 

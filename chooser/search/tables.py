@@ -250,7 +250,8 @@ class Tables:
             np.arange(count, dtype=np.int32),
         )
         self._made: dict[tuple[int, Join], Rows] = {}
-        self._sieves: dict[tuple[int, Join, Join], Sieve] = {}
+        self._sieves: dict[tuple[int, Join], Sieve] = {}
+        self._pairs_made: tuple[Ints, Ints] | None = None
         self._counts: dict[int, int] = {}
         self._uses_list = uses.tolist()
 
@@ -275,15 +276,42 @@ class Tables:
             self._made[key] = self._list(size, join)
         return self._made[key]
 
-    def sieve(self, size: int, join: Join, adds: Join) -> Sieve:
-        """Return the sieve of a table of groups, in the unit that adds under the join `adds`."""
-        key = (size, join, adds)
+    def sieve(self, size: int, adds: Join) -> Sieve:
+        """Return the sieve of all groups of a size, in the unit that adds under a join."""
+        key = (size, adds)
         if key not in self._sieves:
-            value = self.groups(size, join).value
+            value = np.concatenate([self.groups(size, join).value for join in Join])
             self._sieves[key] = Sieve(value if adds is Join.SERIES else 1 / value)
         return self._sieves[key]
 
+    def _pairs(self) -> tuple[Ints, Ints]:
+        """Return the numbers of all pairs of single parts that the counts allow."""
+        if self._pairs_made is None:
+            left, right = np.triu_indices(len(self.singles))
+            kept = (left != right) | (self.uses[left] > 1)
+            self._pairs_made = left[kept], right[kept]
+        return self._pairs_made
+
+    def _list_pairs(self, join: Join) -> Rows:
+        """List the groups of two, the bulk of all listing, without intermediate rows."""
+        left, right = self._pairs()
+        a, b = self.singles.value[left], self.singles.value[right]
+        value = a + b if join is Join.SERIES else 1 / (1 / a + 1 / b)
+        order = np.argsort(value, kind="stable")
+        left = left[order].astype(np.int32)
+        return Rows(
+            2,
+            (joined_shape(join, Leaf(0), Leaf(0), 1),),
+            value[order],
+            np.stack([left, right[order].astype(np.int32)], axis=1),
+            np.zeros(len(order), dtype=np.int16),
+            np.ones(len(order), dtype=np.int8),
+            left,
+        )
+
     def _list(self, size: int, join: Join) -> Rows:
+        if size == 2:  # noqa: PLR2004 - a pair
+            return self._list_pairs(join)
         pieces: list[Rows] = []
         for head_size in range(1, size // 2 + 1):
             heads = self.children(head_size, join)

@@ -58,7 +58,13 @@ def find_in_windows(tables: Tables, size: int, low: Floats, high: Floats) -> Ite
     -----
     For w windows and n parts: O(w log n) where the size is listed, O(w n log n) one size above.
     """
-    low, high = low * (1 - ROUNDING), high * (1 + ROUNDING)
+    order = np.argsort(low, kind="stable")
+    low, high = low[order] * (1 - ROUNDING), high[order] * (1 + ROUNDING)
+    for found in _in_any(tables, size, low, high):
+        yield Found(order[found.window], found.rows)
+
+
+def _in_any(tables: Tables, size: int, low: Floats, high: Floats) -> Iterator[Found]:
     if tables.listed(size):
         for table in _tables_of(tables, size):
             yield from _in_table(table, low, high)
@@ -108,13 +114,10 @@ def _in_groups(
             continue
         # Beside the head stands another child, or a group of two or more that rank no lower.
         rests = [join.dual, join] if rest_size >= 2 * head_size else [join.dual]
-        for rest_join in rests:
-            listed = tables.listed(rest_size)
-            if listed and not len(tables.groups(rest_size, rest_join)):
-                continue
-            rest = partial(tables.sieve, rest_size, rest_join) if listed else None
-            for window, head in _promising(heads, join, low, high, rest):
-                bounds = _partner_windows(join, heads.value[head], low[window], high[window])
+        sieve = partial(tables.sieve, rest_size) if tables.listed(rest_size) else None
+        for window, head in _promising(heads, join, low, high, sieve):
+            bounds = _partner_windows(join, heads.value[head], low[window], high[window])
+            for rest_join in rests:
                 partners = _in_groups(tables, rest_size, rest_join, *bounds)
                 ranked = rest_join is join
                 yield from _completed(tables, join, heads, window, head, partners, ranked=ranked)
@@ -172,45 +175,43 @@ def _same_table(
 
 
 def _promising(
-    heads: Rows, join: Join, low: Floats, high: Floats, rest: Callable[[Join], Sieve] | None
+    heads: Rows, join: Join, low: Floats, high: Floats, sieve: Callable[[Join], Sieve] | None
 ) -> Iterator[tuple[Ints, Ints]]:
     """Pair each window with the heads that leave room for a partner, maybe with one there.
 
     Parameters
     ----------
-    rest : the sieve of the table that the partner must come from, in ohms or siemens; None
-        where it is not listed.
+    sieve : makes the sieve of the tables that the partner must come from, in what adds under a
+        join; None where they are not listed.
     """
     if join is Join.SERIES:
-        first = np.zeros(len(low), dtype=np.int64)
+        first = np.zeros(len(high), dtype=np.int64)
         last = np.searchsorted(heads.value, high, "left")
-        bases, needs = low, (high - low) / NARROW
-        narrow = needs < low / 2
     else:
         first = np.searchsorted(heads.value, low, "right")
         last = np.full(len(low), len(heads), dtype=np.int64)
+    if join is Join.SERIES:
+        bases, shifts, widths = low, heads.value, high - low
+    else:
         with np.errstate(divide="ignore", invalid="ignore"):
-            bases, needs = 1 / high, (1 / low - 1 / high) / NARROW
-        narrow = needs < bases / 2
-    if rest is None or int(np.count_nonzero(narrow)) * len(heads) < WORTH:
+            bases, shifts, widths = 1 / high, 1 / heads.value, 1 / low - 1 / high
+    # What a head leaves must be wide enough of zero for the sieve; `least` is in what adds.
+    with np.errstate(invalid="ignore"):
+        least = widths / NARROW
+        narrow = least < bases / 2
+    if sieve is None or int(np.count_nonzero(narrow)) * len(heads) < WORTH:
         yield from ragged(first, last)
         return
-    # Heads that leave a partner too small for the sieve, in the unit that adds, are few.
+    room = np.where(narrow, bases - least, -1.0)
     if join is Join.SERIES:
-        middle = np.searchsorted(heads.value, np.where(narrow, low - needs, 0.0), "right")
+        middle = np.clip(np.searchsorted(heads.value, room, "right"), first, last)
         yield from ragged(middle, last)
-        shifts = heads.value
+        yield from sieved_pairs(sieve(join), bases, shifts, first, middle)
     else:
-        middle = np.searchsorted(
-            heads.value, np.where(narrow, 1 / np.where(narrow, bases - needs, 1.0), np.inf), "left"
-        )
+        far = np.where(narrow, 1 / np.where(narrow, room, 1.0), np.inf)
+        middle = np.clip(np.searchsorted(heads.value, far, "left"), first, last)
         yield from ragged(first, middle)
-        shifts = 1 / heads.value
-    for window, head in sieved_pairs(rest(join), bases, shifts):
-        sure = head < middle[window] if join is Join.SERIES else head >= middle[window]
-        sure &= narrow[window]
-        if sure.any():
-            yield window[sure], head[sure]
+        yield from sieved_pairs(sieve(join), bases, shifts, middle, last)
 
 
 def _partner_windows(
