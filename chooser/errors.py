@@ -119,7 +119,7 @@ class SheetError(ChooserError, ValueError):
 
 
 class StockError(ChooserError):
-    """The stock refuses: not enough free parts, no such holding, or a database that is not usable."""
+    """The stock refuses: too few free parts, no such holding, or an unusable database."""
 
 
 class StockShortError(ChooserError):

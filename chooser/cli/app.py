@@ -10,6 +10,8 @@ from chooser.cli.boundary import Boundary
 app = typer.Typer(
     cls=Boundary,
     name="chooser",
+    rich_markup_mode=None,
+    add_completion=False,
     help="Timing circuits that keep their interval, from the parts already in your drawers.",
     no_args_is_help=True,
     pretty_exceptions_enable=False,

@@ -9,7 +9,11 @@ import typer
 
 from chooser.cli.options import Db, Json
 
-app = typer.Typer(help="Find, copy and bring up to date the stock database.", no_args_is_help=True)
+app = typer.Typer(
+    rich_markup_mode=None,
+    help="Find, copy and bring up to date the stock database.",
+    no_args_is_help=True,
+)
 
 Copy = Annotated[
     Path | None,

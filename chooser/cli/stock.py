@@ -10,7 +10,11 @@ import typer
 from chooser.cli.options import Db, Json
 from chooser.parts import Entry, Kind
 
-app = typer.Typer(help="Load, add to and list the parts in your drawers.", no_args_is_help=True)
+app = typer.Typer(
+    rich_markup_mode=None,
+    help="Load, add to and list the parts in your drawers.",
+    no_args_is_help=True,
+)
 
 Files = Annotated[
     list[Path],

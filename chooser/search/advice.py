@@ -23,6 +23,12 @@ TOO_SHORT = (
 )
 
 
+NO_PURCHASE = (
+    "No single resistor or capacitor of the usual series would get there either; accept a wider "
+    "band, allow more parts, or build fewer boards."
+)
+
+
 def advice_for(
     stock: Sequence[Holding], usable: Usable, fits: Collection[Fit], request: Request
 ) -> tuple[str, ...]:
@@ -44,7 +50,9 @@ def advice_for(
     if missing:
         return missing
     bought = one_purchase(usable.resistors, usable.capacitors, request)
-    reason = [*_out_of_reach(usable, request)]
+    reason = _out_of_reach(usable, request)
+    if bought is None and not reason:
+        return (NO_PURCHASE,)
     return (*reason, *([str(bought)] if bought else []))
 
 

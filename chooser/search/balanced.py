@@ -21,15 +21,13 @@ from chooser.circuits.monostable import Drive, interval, sensitivity, typical
 from chooser.interval import likely_miss, mean_of, spread_of
 from chooser.networks import Join
 from chooser.search.exact import SAME
-from chooser.search.nearest import Near, nearest
+from chooser.search.nearest import Near, Wish, nearest
 from chooser.search.pools import Floats, Ints
 from chooser.search.ranking import Judge, Pairing
 from chooser.search.slots import CapacitorSlots, lot_tolerances
 from chooser.search.space import Level, Space
 from chooser.search.tables import Rows
-
-NEAREST = 8
-"""Resistor networks weighed for every capacitor network and number of resistors."""
+from chooser.search.terms import NEAREST
 
 PER_PART = 1.10
 """Each extra part must cut the likely miss by this factor to earn its place."""
@@ -50,16 +48,25 @@ class Weighed:
     slots : the capacitor networks.
     score : (n,) lower is better. slot : (n,) number of the capacitor network.
     rows : the n resistor networks.
+    space : whose lots the networks are made of.
     """
 
     slots: CapacitorSlots
     score: Floats
     slot: Ints
     rows: Rows
+    space: Space
 
     def only(self, kept: NDArray[np.bool_] | Ints) -> Weighed:
         """Return some of them."""
-        return Weighed(self.slots, self.score[kept], self.slot[kept], self.rows.take(kept))
+        rows = self.rows.take(kept)
+        return Weighed(self.slots, self.score[kept], self.slot[kept], rows, self.space)
+
+    def values_of(self, row: int) -> tuple[tuple[float, ...], tuple[float, ...]]:
+        """Return the values of a circuit's parts, in ohm and farad, sorted."""
+        ohm = self.space.resistors.value[self.rows.leaves[row]]
+        farad = self.space.capacitors.value[self.slots.rows.leaves[self.slot[row]]]
+        return tuple(sorted(ohm.tolist())), tuple(sorted(farad.tolist()))
 
 
 class BalancedSearch:
@@ -91,11 +98,11 @@ class BalancedSearch:
         """Weigh one level, but only where it could still get a place."""
         floor = self._weigher.least_score(slots, level.parts)
         chosen = np.flatnonzero((floor < last) & (slots.least <= slots.most))
-        wishes = slots.wanted[chosen], slots.least[chosen], slots.most[chosen]
-        near = nearest(self._space.resistor_tables, level.resistors, *wishes, NEAREST)
+        wish = Wish(slots.wanted[chosen], slots.least[chosen], slots.most[chosen])
+        near = nearest(self._space.resistor_tables, level.resistors, wish, NEAREST)
         near = Near(chosen[near.owner], near.rows)
         score = self._weigher.score(near, slots, level.parts)
-        weighed = Weighed(slots, score, near.owner, near.rows)
+        weighed = Weighed(slots, score, near.owner, near.rows, self._space)
         self._weighed.append(weighed.only(score <= last))
 
     def _last_place(self) -> float:
@@ -188,7 +195,7 @@ def _front(levels: list[Weighed], wanted: int) -> _Front:
     keep = 64 * wanted
     while True:
         best = np.argsort(score, kind="stable")[:keep]
-        best = best[_first_of_parts(levels, level[best], row[best])]
+        best = best[_first_of_values(levels, level[best], row[best])]
         handicap = _handicap(levels, level[best], row[best])
         whole = np.floor(score[best] / OUTSIDE) * OUTSIDE
         handicapped = (score[best] - whole) * handicap + whole
@@ -198,16 +205,18 @@ def _front(levels: list[Weighed], wanted: int) -> _Front:
         keep *= 8
 
 
-def _first_of_parts(levels: list[Weighed], level: Ints, row: Ints) -> Ints:
-    """Return the places of the first circuit of each set of parts."""
+def _first_of_values(levels: list[Weighed], level: Ints, row: Ints) -> Ints:
+    """Return the places of the first circuit of each set of part values.
+
+    Other arrangements of the same parts, and equal values from other drawers, are no other answer.
+    """
     seen: set[tuple[object, ...]] = set()
     kept = []
     for place, (number, index) in enumerate(zip(level.tolist(), row.tolist(), strict=True)):
         weighed = levels[number]
-        leaves = tuple(sorted(weighed.rows.leaves[index].tolist()))
-        capacitors = tuple(sorted(weighed.slots.rows.leaves[weighed.slot[index]].tolist()))
-        if (leaves, capacitors) not in seen:
-            seen.add((leaves, capacitors))
+        values = weighed.values_of(index)
+        if values not in seen:
+            seen.add(values)
             kept.append(place)
     return np.array(kept, dtype=np.int64)
 

@@ -103,8 +103,8 @@ def tie_break(choice: Choice, resistors: Drawers, capacitors: Drawers) -> tuple[
     """Return the part of the sort key that settles equal errors and parts."""
     ohms, farads = sorted(members(choice.resistor)), sorted(members(choice.capacitor))
     plenty = min(
-        min(resistors.uses[number] // ohms.count(number) for number in ohms),
-        min(capacitors.uses[number] // farads.count(number) for number in farads),
+        *(resistors.uses[number] // ohms.count(number) for number in ohms),
+        *(capacitors.uses[number] // farads.count(number) for number in farads),
     )
     return (-plenty, ohms, farads, _written(choice.resistor), _written(choice.capacitor))
 

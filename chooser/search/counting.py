@@ -8,14 +8,14 @@ have at least one, two, three … pieces.
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
-from functools import lru_cache
+from functools import cache
 from itertools import product
 from math import comb
 
 Pattern = tuple[int, ...]
 
 
-@lru_cache(maxsize=None)
+@cache
 def networks_of(pattern: Pattern) -> int:
     """Count the series/parallel networks that use every part of a multiset.
 
@@ -37,7 +37,7 @@ def networks_of(pattern: Pattern) -> int:
     return 1 if size == 1 else 2 * _groups_of(tuple(sorted(pattern, reverse=True)))
 
 
-@lru_cache(maxsize=None)
+@cache
 def _groups_of(pattern: Pattern) -> int:
     """Count the series groups (by duality: the parallel groups) that use the whole pattern.
 
@@ -102,9 +102,7 @@ def networks_from(uses: Sequence[int], size: int) -> int:
     uses : how often each holding may be used in one network.
     size : parts in the network, >= 1.
     """
-    return sum(
-        multisets_with(pattern, uses) * networks_of(pattern) for pattern in partitions(size)
-    )
+    return sum(multisets_with(pattern, uses) * networks_of(pattern) for pattern in partitions(size))
 
 
 def networks_from_polarised(free: Sequence[int], polar: Sequence[int], size: int) -> int:

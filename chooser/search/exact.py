@@ -23,10 +23,10 @@ from chooser.circuits.monostable import interval, resistance, typical
 from chooser.networks import Network
 from chooser.search.pools import Floats, Ints
 from chooser.search.ranking import PPM, Judge, Pairing, order_key
-from chooser.search.request import Rank
 from chooser.search.slots import CapacitorSlots
 from chooser.search.space import Level, Space
 from chooser.search.tables import Rows
+from chooser.search.terms import Rank
 from chooser.search.windows import ROUNDING, Found, find_in_windows
 
 SAME = 1e-12
@@ -113,7 +113,9 @@ class ExactSearch:
             if slot not in networks:
                 networks[slot] = slots.rows.network(slot)
             self._kept.append(
-                self._judge.pairing(pairs.rows.network(row), networks[slot], float(slots.leak[slot]))
+                self._judge.pairing(
+                    pairs.rows.network(row), networks[slot], float(slots.leak[slot])
+                )
             )
         self._kept.sort(key=self._key)
         if len(self._kept) > self._request.top:

@@ -15,8 +15,9 @@ from chooser.search.fits import explained, fit_of
 from chooser.search.house_rules import Usable, check_part_numbers, limits_refusal, usable_parts
 from chooser.search.ranking import Judge
 from chooser.search.recheck import recheck
-from chooser.search.request import Answer, Rank, Refusal, Request, Searched
+from chooser.search.request import Answer, Refusal, Request, Searched
 from chooser.search.space import Space, combinations
+from chooser.search.terms import Rank
 
 
 def find_fits(holdings: Iterable[Holding], request: Request) -> Answer:
@@ -50,7 +51,7 @@ def find_fits(holdings: Iterable[Holding], request: Request) -> Answer:
         recheck(fit, request)
     searched = Searched(
         combinations=combinations(usable.resistors, usable.capacitors, request),
-        complete=not limit,
+        complete=not limit and request.rank is not Rank.BALANCED,
         limit=limit,
         seconds=perf_counter() - start,
     )
@@ -74,8 +75,8 @@ def _search(usable: Usable, request: Request) -> tuple[list[Choice], str]:
         pairings = BalancedSearch(space, judge).pairings()
         return [best_choice(pairing, *drawers, request) for pairing in pairings], space.limit
     found, complete = choices(ExactSearch(space, judge).pairings(), *drawers, request)
-    limit = space.limit if complete else "not every way to take equal parts from drawers was weighed"
-    return found[: request.top], limit
+    limit = "" if complete else "not every way to take equal parts from drawers was weighed"
+    return found[: request.top], space.limit or limit
 
 
 def _refusals(usable: Usable, request: Request) -> tuple[Refusal, ...]:

@@ -4,17 +4,28 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import replace as changed
+from itertools import pairwise
 
 from chooser.cautions import FitFacts, cautions_of
 from chooser.circuits.leakage import leak_conductance
 from chooser.interval import SlotFacts, likely_miss, outlook
-from chooser.networks import Group, Join, Network, adding_join, members, replace, slot_tolerance, value_of
+from chooser.networks import (
+    Group,
+    Join,
+    Network,
+    adding_join,
+    members,
+    replace,
+    slot_tolerance,
+    value_of,
+)
 from chooser.parts import Holding, Kind
 from chooser.quantities import format_percent
 from chooser.search.balanced import PER_PART
 from chooser.search.choosing import Choice
 from chooser.search.ranking import whole_ppm
-from chooser.search.request import Fit, Rank, Request
+from chooser.search.request import Fit, Request
+from chooser.search.terms import Rank
 from chooser.uncertainty import limits_of
 
 
@@ -90,8 +101,8 @@ def parts_in(fit: Fit) -> int:
 def explained(fits: Sequence[Fit], rank: Rank) -> tuple[Fit, ...]:
     """Say of every fit but the last why it ranks before the next."""
     reason = _balanced_reason if rank is Rank.BALANCED else _exact_reason(rank)
-    pairs = zip(fits, fits[1:], strict=False)
-    return (*(changed(fit, why=reason(fit, after)) for fit, after in pairs), *fits[-1:])
+    said = (changed(fit, why=reason(fit, after)) for fit, after in pairwise(fits))
+    return (*said, *fits[-1:])
 
 
 def _exact_reason(rank: Rank) -> Callable[[Fit, Fit], str]:

@@ -14,8 +14,9 @@ from numpy.typing import ArrayLike, NDArray
 from chooser.circuits.monostable import Drive, limits
 from chooser.errors import BadRequestError
 from chooser.parts import Holding, Kind
-from chooser.quantities import format_capacitance, format_resistance, format_voltage
-from chooser.search.request import Refusal, Request, Rule
+from chooser.quantities import format_resistance, format_voltage
+from chooser.search.request import Refusal, Request
+from chooser.search.terms import REASONS, USUAL_PARTS, Rule
 from chooser.technologies import technology_of
 
 LEAST_FARAD = 1e-9
@@ -27,19 +28,6 @@ LEAK_RATIO = 3.0
 At 3 the interval is stretched by a fifth to a quarter, and what it will be next week is
 anybody's guess; the limit is ours, the stretch follows from the charging equation.
 """
-
-USUAL_PARTS = 4
-"""Parts in a slot that anyone cares to solder."""
-
-REASONS = {
-    Rule.RESISTOR_LIMITS: "the timer or the capacitor's leakage does not allow the resistance",
-    Rule.CERAMIC: "class 2 and 3 ceramics change with voltage, temperature and age",
-    Rule.POLARISED_SERIES: "polarised capacitors in series share the voltage by leakage",
-    Rule.VOLTAGE: "the rated voltage is below the supply",
-    Rule.STRAYS: f"below {format_capacitance(LEAST_FARAD)} the strays of the board count",
-    Rule.MANY_PARTS: f"more than {USUAL_PARTS} parts in a slot are for test jigs",
-}
-"""Each rule in a clause, for the help and for refusals."""
 
 
 @dataclass(frozen=True, slots=True)

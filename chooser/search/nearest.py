@@ -13,6 +13,21 @@ from chooser.search.windows import find_in_windows
 WISHES_AT_ONCE = 2048
 """Wishes worked on together where a size is not listed: bounds the memory."""
 
+
+@dataclass(frozen=True, slots=True)
+class Wish:
+    """Resistances that are wanted.
+
+    Attributes
+    ----------
+    wanted : (w,) values in ohm. least, most : (w,) limits in ohm, both included.
+    """
+
+    wanted: Floats
+    least: Floats
+    most: Floats
+
+
 @dataclass(frozen=True, slots=True)
 class Near:
     """Networks near to what was wanted.
@@ -26,31 +41,28 @@ class Near:
     rows: Rows
 
 
-def nearest(
-    tables: Tables, size: int, wanted: Floats, least: Floats, most: Floats, count: int
-) -> Near:
+def nearest(tables: Tables, size: int, wish: Wish, count: int) -> Near:
     """Find the networks of exactly `size` parts that lie nearest to each wanted value.
 
     Parameters
     ----------
     tables : of the pool, in ohm.
     size : parts in the network.
-    wanted : (w,) values in ohm. least, most : (w,) limits in ohm, both included.
-    count : how many for each.
+    wish : what is wanted. count : how many for each wish.
 
     Returns
     -------
     Up to `count` for each wish; fewer where no more lie within its limits.
     """
     # A wish outside its limits is nearest to whatever is nearest to the limit.
-    near_wish = np.clip(wanted, least, most)
+    inside = Wish(np.clip(wish.wanted, wish.least, wish.most), wish.least, wish.most)
     if tables.listed(size):
-        near = _from_tables(every_network(tables, size), near_wish, count)
+        near = _from_tables(every_network(tables, size), inside.wanted, count)
     else:
-        near = _from_windows(tables, size, (near_wish, least, most), count)
+        near = _from_windows(tables, size, inside, count)
     value, owner = near.rows.value, near.owner
-    kept = np.flatnonzero((value >= least[owner]) & (value <= most[owner]))
-    return _cut(Near(owner[kept], near.rows.take(kept)), wanted, count)
+    kept = np.flatnonzero((value >= wish.least[owner]) & (value <= wish.most[owner]))
+    return _cut(Near(owner[kept], near.rows.take(kept)), wish.wanted, count)
 
 
 def _from_tables(listed: list[Rows], wanted: Floats, count: int) -> Near:
@@ -66,13 +78,11 @@ def _from_tables(listed: list[Rows], wanted: Floats, count: int) -> Near:
     return Near(np.concatenate(owners), Rows.concatenated(pieces))
 
 
-def _from_windows(
-    tables: Tables, size: int, wish: tuple[Floats, Floats, Floats], count: int
-) -> Near:
+def _from_windows(tables: Tables, size: int, wish: Wish, count: int) -> Near:
     """Widen each wish's window until enough lie in it, or it is as wide as the limits."""
-    wanted, least, most = wish
     smallest, largest = tables.singles.value[0] / size, tables.singles.value[-1] * size
-    least, most = np.maximum(least, smallest), np.minimum(most, largest)
+    least, most = np.maximum(wish.least, smallest), np.minimum(wish.most, largest)
+    wanted = wish.wanted
     owners: list[Ints] = [np.empty(0, dtype=np.int64)]
     pieces: list[Rows] = [Rows.none(size)]
     # A quarter of the width that would do if the networks were spread evenly over the octaves.

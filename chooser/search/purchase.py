@@ -16,7 +16,8 @@ from chooser.quantities import (
     format_resistance,
 )
 from chooser.search.house_rules import LEAST_FARAD, leak_bound, resistor_limits
-from chooser.search.request import Request, Rule
+from chooser.search.request import Request
+from chooser.search.terms import Rule
 
 BIGGEST_FILM = 4.7e-6
 """Farad up to which film capacitors are commonly sold (common practice, no source)."""

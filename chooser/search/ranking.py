@@ -18,7 +18,8 @@ from typing import Any
 from chooser.circuits.monostable import LN3, interval, typical
 from chooser.networks import Join, Network, members, value_of
 from chooser.search.pools import Pool
-from chooser.search.request import Rank, Request
+from chooser.search.request import Request
+from chooser.search.terms import Rank
 
 PPM = 1e-6
 
@@ -74,19 +75,17 @@ class Judge:
         """Weigh a pair of networks of lots; `leak` is the capacitor's in siemens."""
         ohm = value_of(resistor, Join.SERIES, self._ohm.__getitem__)
         if capacitor not in self._values:
-            self._values[capacitor] = value_of(
-                capacitor, Join.PARALLEL, self._farad.__getitem__
-            )
-        size = abs(self.error(ohm, self._values[capacitor], leak))
+            self._values[capacitor] = value_of(capacitor, Join.PARALLEL, self._farad.__getitem__)
+        size = self.size_of_error(ohm, self._values[capacitor], leak)
         parts = sum(1 for _ in members(resistor)) + sum(1 for _ in members(capacitor))
         return Pairing(resistor, capacitor, parts, size, whole_ppm(size))
 
-    def error(self, ohm: Fraction, farad: Fraction, leak: float) -> Size:
-        """Return (interval - target) / target of exact values and a leak in siemens."""
+    def size_of_error(self, ohm: Fraction, farad: Fraction, leak: float) -> Size:
+        """Return |interval - target| / target of exact values and a leak in siemens."""
         if self._request.timer.ideal:
-            return ohm * farad * Fraction(LN3) / self._target - 1
+            return abs(ohm * farad * Fraction(LN3) / self._target - 1)
         time = float(interval(float(ohm), float(farad), leak, self._drive))
-        return time / self._request.target - 1
+        return abs(time / self._request.target - 1)
 
 
 def whole_ppm(size: Size) -> int:

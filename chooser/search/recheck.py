@@ -75,4 +75,3 @@ def _check_counts(fit: Fit, request: Request) -> None:
                 f"chooser's own check failed: {count * request.boards} pieces of holding {number} "
                 f"were picked and {there} are free; please report it with the command you gave."
             )
-

@@ -3,32 +3,13 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from enum import StrEnum
 
 from chooser.cautions import Caution
 from chooser.circuits.timers import Timer
 from chooser.interval import Outlook
 from chooser.networks import Network
 from chooser.parts import Holding
-
-
-class Rank(StrEnum):
-    """What makes one fit better than another."""
-
-    BALANCED = "balanced"
-    ERROR = "error"
-    COUNT = "count"
-
-
-class Rule(StrEnum):
-    """A house rule, by the name under which it is lifted."""
-
-    RESISTOR_LIMITS = "resistor-limits"
-    CERAMIC = "class-2-ceramic"
-    POLARISED_SERIES = "polarised-series"
-    VOLTAGE = "voltage"
-    STRAYS = "small-capacitor"
-    MANY_PARTS = "many-parts"
+from chooser.search.terms import Rank, Rule
 
 
 @dataclass(frozen=True, slots=True)
@@ -70,7 +51,7 @@ class Refusal:
     Attributes
     ----------
     rule : the rule. why : one sentence that says what was kept out and for what reason.
-    holdings : ids of the holdings kept out as a whole.
+    holdings : ids of the holdings kept out as a whole; empty where it is networks that are.
     """
 
     rule: Rule
@@ -113,7 +94,8 @@ class Searched:
     Attributes
     ----------
     combinations : circuits in the space, listed or covered by argument.
-    complete : whether the answer is proven for the whole space.
+    complete : whether the answer is proven for the whole space; the balanced order weighs only
+        the nearest networks and never says so.
     limit : what was left out and why, or "".
     seconds : time taken.
     """

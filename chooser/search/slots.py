@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Hashable, Sequence
 from dataclasses import dataclass
-from functools import lru_cache
+from functools import cache
 
 import numpy as np
 from numpy.typing import NDArray
@@ -15,10 +15,12 @@ from chooser.networks import Group, Join, Leaf
 from chooser.parts import Holding, Part, Tolerance
 from chooser.search.house_rules import LEAST_FARAD, leak_bound, resistor_limits
 from chooser.search.pools import Floats, Pool, gather
-from chooser.search.request import Rank, Request, Rule
+from chooser.search.request import Request
 from chooser.search.tables import Rows, Shape, Tables, every_network
+from chooser.search.terms import Rank, Rule
 from chooser.technologies import technology_of
 from chooser.uncertainty import limits_of
+
 
 def resistor_pool(holdings: Sequence[Holding], request: Request) -> Pool:
     """Gather the resistors; only the balanced order tells tolerances apart."""
@@ -80,9 +82,7 @@ class CapacitorSlots:
         return len(self.farad)
 
 
-def capacitor_slots(
-    pool: Pool, tables: Tables, size: int, request: Request
-) -> CapacitorSlots:
+def capacitor_slots(pool: Pool, tables: Tables, size: int, request: Request) -> CapacitorSlots:
     """List the capacitor networks of one size that the house rules allow.
 
     Parameters
@@ -154,7 +154,7 @@ def _unpolarised_series(rows: Rows, polarised: NDArray[np.bool_]) -> NDArray[np.
     return fine
 
 
-@lru_cache(maxsize=None)
+@cache
 def _in_series(shape: Shape) -> tuple[int, ...]:
     """Return the leaf columns that stand in some series group."""
     if isinstance(shape, Leaf):

@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from chooser.parts import Holding
 from chooser.search.counting import networks_from, networks_from_polarised
 from chooser.search.pools import Pool, uses_of
-from chooser.search.request import Request, Rule
+from chooser.search.request import Request
 from chooser.search.slots import (
     CapacitorSlots,
     capacitor_pool,
@@ -17,6 +17,7 @@ from chooser.search.slots import (
     resistor_pool,
 )
 from chooser.search.tables import Tables
+from chooser.search.terms import Rule
 
 MOST_LISTED = 150_000
 """Groups of a resistor table that are listed; a larger one is split, because sorting costs more."""
@@ -73,7 +74,7 @@ class Space:
                     yield Level(parts - capacitors, capacitors)
 
     def slots(self, capacitors: int) -> CapacitorSlots | None:
-        """Return the capacitor networks of a size, or None, and note it, where they are too many."""
+        """Return the capacitor networks of a size; None, and a note, where they are too many."""
         if capacitors not in self._slots:
             count = self._capacitor_tables.count(capacitors)
             if count > MOST_CAPACITOR_NETWORKS:
@@ -106,9 +107,7 @@ def combinations(
     free = [h for h in farads if not (apart and is_polarised(h.part))]
     free_uses = [uses_of(holding, request.boards) for holding in free]
     polar_uses = [uses_of(holding, request.boards) for holding in polar]
-    return sum(
-        networks_from(ohms, size) for size in range(1, request.most_resistors + 1)
-    ) * sum(
+    return sum(networks_from(ohms, size) for size in range(1, request.most_resistors + 1)) * sum(
         networks_from_polarised(free_uses, polar_uses, size)
         for size in range(1, request.most_capacitors + 1)
     )

@@ -15,7 +15,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from functools import lru_cache
+from functools import cache
 
 import numpy as np
 from numpy.typing import NDArray
@@ -122,7 +122,6 @@ class Rows:
                 result[chosen] = _fold(shape, of[self.leaves[chosen]], adds)
         return result
 
-
     def evaluate_shares(self, of: Floats, relative: Floats, adds: Join) -> Floats:
         """Add up relative figures of the parts, each weighted by the part's share of the value.
 
@@ -162,49 +161,49 @@ def _fold(shape: Shape, figures: Floats, adds: Join) -> Floats:
         return figures[:, shape.member]
     children = [_fold(child, figures, adds) for child in shape.children]
     if shape.join is adds:
-        return np.sum(children, axis=0)
+        return np.asarray(np.sum(children, axis=0))
     with np.errstate(divide="ignore"):
         return np.asarray(1 / np.sum([1 / child for child in children], axis=0))
 
 
-@lru_cache(maxsize=None)
+@cache
 def joined_shape(join: Join, left: Shape, right: Shape, shift: int) -> Shape:
-    """Join two arrangements; the right one's columns move up by `shift`, its like join dissolves."""
+    """Join two arrangements, the right one with its columns moved up; like joins dissolve."""
     moved = replace(right, lambda column: column + shift)
     rest = moved.children if isinstance(moved, Group) and moved.join is join else (moved,)
     return Group(join, (left, *rest))
 
 
 def joined(
-    join: Join, left: Rows, lefts: Ints, right: Rows, rights: Ints, uses: Ints
+    join: Join, left: tuple[Rows, Ints], right: tuple[Rows, Ints], uses: Ints
 ) -> tuple[Ints, Rows]:
     """Join rows pairwise and drop those that use more pieces than there are.
 
     Parameters
     ----------
     join : how.
-    left, right : tables or found rows; `left` is the head's.
-    lefts, rights : (n,) the row numbers to join.
+    left, right : a table, or found rows, and (n,) row numbers in it; `left` is the head's.
     uses : (parts,) pieces of each part that a network may use.
 
     Returns
     -------
     (m,) which of the n pairs remained, and the joined rows, unsorted.
     """
-    leaves = np.concatenate([left.leaves[lefts], right.leaves[rights]], axis=1)
+    (heads, lefts), (rests, rights) = left, right
+    leaves = np.concatenate([heads.leaves[lefts], rests.leaves[rights]], axis=1)
     kept = np.flatnonzero(_allowed(leaves, uses))
     lefts, rights, leaves = lefts[kept], rights[kept], leaves[kept]
-    a, b = left.value[lefts], right.value[rights]
+    a, b = heads.value[lefts], rests.value[rights]
     shapes = tuple(
-        joined_shape(join, one, other, left.size) for one in left.shapes for other in right.shapes
+        joined_shape(join, one, other, heads.size) for one in heads.shapes for other in rests.shapes
     )
     rows = Rows(
-        size=left.size + right.size,
+        size=heads.size + rests.size,
         shapes=shapes,
         value=a + b if join is Join.SERIES else 1 / (1 / a + 1 / b),
         leaves=leaves,
-        shape=(left.shape[lefts] * len(right.shapes) + right.shape[rights]).astype(np.int16),
-        head_size=np.full(len(kept), left.size, dtype=np.int8),
+        shape=(heads.shape[lefts] * len(rests.shapes) + rests.shape[rights]).astype(np.int16),
+        head_size=np.full(len(kept), heads.size, dtype=np.int8),
         head=lefts.astype(np.int32),
     )
     return kept, rows
@@ -298,15 +297,15 @@ class Tables:
         a, b = self.singles.value[left], self.singles.value[right]
         value = a + b if join is Join.SERIES else 1 / (1 / a + 1 / b)
         order = np.argsort(value, kind="stable")
-        left = left[order].astype(np.int32)
+        heads = left[order].astype(np.int32)
         return Rows(
             2,
             (joined_shape(join, Leaf(0), Leaf(0), 1),),
             value[order],
-            np.stack([left, right[order].astype(np.int32)], axis=1),
+            np.stack([heads, right[order].astype(np.int32)], axis=1),
             np.zeros(len(order), dtype=np.int16),
             np.ones(len(order), dtype=np.int8),
-            left,
+            heads,
         )
 
     def _list(self, size: int, join: Join) -> Rows:
@@ -320,21 +319,19 @@ class Tables:
                 lefts, rights = np.triu_indices(len(heads))
             else:
                 lefts, rights = _all_pairs(len(heads), len(rest))
-            pieces.append(joined(join, heads, lefts, rest, rights, self.uses)[1])
+            pieces.append(joined(join, (heads, lefts), (rest, rights), self.uses)[1])
             if size - head_size >= 2 * head_size and size - head_size > 1:
                 rest = self.groups(size - head_size, join)
                 lefts, rights = _all_pairs(len(heads), len(rest))
                 fitting = ranks_no_lower(rest, rights, head_size, lefts)
                 pieces.append(
-                    joined(join, heads, lefts[fitting], rest, rights[fitting], self.uses)[1]
+                    joined(join, (heads, lefts[fitting]), (rest, rights[fitting]), self.uses)[1]
                 )
         together = Rows.concatenated(pieces)
         return together.take(np.argsort(together.value, kind="stable"))
 
 
-def ranks_no_lower(
-    rest: Rows, rights: Ints, head_size: int, heads: Ints
-) -> NDArray[np.bool_]:
+def ranks_no_lower(rest: Rows, rights: Ints, head_size: int, heads: Ints) -> NDArray[np.bool_]:
     """Tell where the head of a rest group ranks no lower than the head it is to be joined to."""
     sizes = rest.head_size[rights]
     return np.asarray((sizes > head_size) | ((sizes == head_size) & (rest.head[rights] >= heads)))
@@ -350,5 +347,3 @@ def every_network(tables: Tables, size: int) -> list[Rows]:
     if size == 1:
         return [tables.singles]
     return [tables.groups(size, join) for join in Join]
-
-

@@ -99,9 +99,7 @@ def _in_table(table: Rows, low: Floats, high: Floats) -> Iterator[Found]:
             yield Found(window, table.take(row))
 
 
-def _in_groups(
-    tables: Tables, size: int, join: Join, low: Floats, high: Floats
-) -> Iterator[Found]:
+def _in_groups(tables: Tables, size: int, join: Join, low: Floats, high: Floats) -> Iterator[Found]:
     """Find the groups of one join in each window, listed or split at the root."""
     if tables.listed(size):
         yield from _in_table(tables.groups(size, join), low, high)
@@ -120,29 +118,35 @@ def _in_groups(
             for rest_join in rests:
                 partners = _in_groups(tables, rest_size, rest_join, *bounds)
                 ranked = rest_join is join
-                yield from _completed(tables, join, heads, window, head, partners, ranked=ranked)
+                for found in _completed(tables, join, (heads, head), partners, ranked=ranked):
+                    yield Found(window[found.window], found.rows)
 
 
 def _completed(
     tables: Tables,
     join: Join,
-    heads: Rows,
-    window: Ints,
-    head: Ints,
+    heads: tuple[Rows, Ints],
     partners: Iterator[Found],
     *,
     ranked: bool,
 ) -> Iterator[Found]:
-    """Join heads to the partners found for them; `ranked` where the partner is a group."""
+    """Join heads to the partners found for them.
+
+    Parameters
+    ----------
+    heads : their table, and (n,) the row whose partners window n of `partners` is for.
+    ranked : True where the partners are groups of the same join, which must rank no lower.
+    """
+    table, head = heads
     for found in partners:
         rights = np.arange(len(found.rows), dtype=np.int64)
         lefts = head[found.window]
         if ranked:
-            fitting = ranks_no_lower(found.rows, rights, heads.size, lefts)
+            fitting = ranks_no_lower(found.rows, rights, table.size, lefts)
             rights, lefts = rights[fitting], lefts[fitting]
-        kept, rows = joined(join, heads, lefts, found.rows, rights, tables.uses)
+        kept, rows = joined(join, (table, lefts), (found.rows, rights), tables.uses)
         if len(kept):
-            yield Found(window[found.window[rights[kept]]], rows)
+            yield Found(found.window[rights[kept]], rows)
 
 
 def _same_table(
@@ -169,7 +173,7 @@ def _same_table(
             start = np.maximum(start, ruling)
         for owner, other in ragged(start, stop):
             lower, upper = np.minimum(ruling[owner], other), np.maximum(ruling[owner], other)
-            kept, rows = joined(join, table, lower, table, upper, tables.uses)
+            kept, rows = joined(join, (table, lower), (table, upper), tables.uses)
             if len(kept):
                 yield Found(window[owner[kept]], rows)
 
@@ -214,10 +218,8 @@ def _promising(
         yield from sieved_pairs(sieve(join), bases, shifts, middle, last)
 
 
-def _partner_windows(
-    join: Join, head: Floats, low: Floats, high: Floats
-) -> tuple[Floats, Floats]:
-    """Take the heads out of their windows: in ohms for a series, in siemens for a parallel group."""
+def _partner_windows(join: Join, head: Floats, low: Floats, high: Floats) -> tuple[Floats, Floats]:
+    """Take the heads out of their windows: in ohms for a series, else in siemens."""
     if join is Join.SERIES:
         return np.maximum(low - head, 0.0), high - head
     with np.errstate(divide="ignore"):
@@ -248,8 +250,7 @@ def ragged(first: Ints, last: Ints) -> Iterator[tuple[Ints, Ints]]:
         stop = max(int(np.searchsorted(ends, done + MOST_PAIRS, "right")), start + 1)
         part = lengths[start:stop]
         owner = np.repeat(np.arange(start, stop, dtype=np.int64), part)
-        offset = np.arange(len(owner), dtype=np.int64) - np.repeat(ends[start:stop] - part - done, part)
+        begins = np.repeat(ends[start:stop] - part - done, part)
+        offset = np.arange(len(owner), dtype=np.int64) - begins
         yield owner, first[owner] + offset
         start = stop
-
-
