@@ -20,11 +20,10 @@ import numpy as np
 from numpy.typing import NDArray
 
 from chooser.circuits.monostable import interval, resistance, typical
-from chooser.networks import Network
 from chooser.search.pools import Floats, Ints
 from chooser.search.ranking import PPM, Judge, Pairing, order_key
 from chooser.search.slots import CapacitorSlots
-from chooser.search.space import Level, Space
+from chooser.search.space import Space
 from chooser.search.tables import Rows
 from chooser.search.terms import Rank
 from chooser.search.windows import ROUNDING, Found, find_in_windows
@@ -65,6 +64,33 @@ class Pairs:
         return self.only(self.error <= last + SAME)
 
 
+@dataclass(frozen=True, slots=True)
+class _Runner:
+    """A pair in the running, weighed by float only; exact fractions come at the end.
+
+    Attributes
+    ----------
+    error : size of the error. parts : parts in all.
+    pairs, row, slots : where its networks are written.
+    """
+
+    error: float
+    parts: int
+    pairs: Pairs
+    row: int
+    slots: CapacitorSlots
+
+    def key(self, rank: Rank, doubt: float) -> tuple[float, ...]:
+        """Return the sort key, with the error and its ppm moved by what rounding may hide."""
+        if rank is Rank.COUNT:
+            return (self.parts, self.error + doubt)
+        return (self.ppm(doubt), self.parts, self.error + doubt)
+
+    def ppm(self, doubt: float) -> int:
+        """Return the error in whole parts per million, halves up."""
+        return int((self.error + doubt) / PPM + 0.5)
+
+
 class ExactSearch:
     """One run; `pairings` gives the shortlist.
 
@@ -76,51 +102,61 @@ class ExactSearch:
     def __init__(self, space: Space, judge: Judge) -> None:
         self._space = space
         self._judge = judge
-        self._request = space.request
-        self._key = order_key(space.request.rank)
-        self._kept: list[Pairing] = []
+        self._top = space.request.top
+        self._rank = space.request.rank
+        self._running: list[_Runner] = []
 
     def pairings(self) -> list[Pairing]:
         """Return the pairings of lots that hold the first places and all ties at the last one."""
         for level in self._space.levels():
-            if self._bound(level.parts) < 0:
+            bound = self._bound(level.parts)
+            if bound < 0:
                 break
             slots = self._space.slots(level.capacitors)
             if slots is not None and len(slots):
-                self._search(level, slots)
-        return self._kept
+                pairs = _Scene(self._space, level.resistors, slots).best(bound)
+                self._enter(pairs, level.parts, slots)
+        return self._weighed()
 
     def _bound(self, parts: int) -> float:
         """Return the largest error with which a fit of so many parts could enter; < 0 if none."""
-        if len(self._kept) < self._request.top:
+        if len(self._running) < self._top:
             return inf
-        last = self._kept[self._request.top - 1]
+        last = self._running[self._top - 1]
         if last.parts == parts:
-            return float(last.size)
-        if self._request.rank is Rank.COUNT:
+            return last.error + SAME
+        if self._rank is Rank.COUNT:
             return -1.0
-        return (last.ppm - 0.5) * PPM
+        return (last.ppm(SAME) - 0.5) * PPM + SAME
 
-    def _search(self, level: Level, slots: CapacitorSlots) -> None:
-        bound = self._bound(level.parts)
-        pairs = _Scene(self._space, level.resistors, slots).best(bound + SAME)
-        self._keep(pairs, slots)
+    def _enter(self, pairs: Pairs, parts: int, slots: CapacitorSlots) -> None:
+        """Let pairs run; drop those that surely stand behind the last place."""
+        errors = pairs.error.tolist()
+        running = self._running + [
+            _Runner(error, parts, pairs, row, slots) for row, error in enumerate(errors)
+        ]
+        running.sort(key=lambda runner: runner.key(self._rank, SAME))
+        if len(running) > self._top:
+            last = running[self._top - 1].key(self._rank, SAME)
+            running = [runner for runner in running if runner.key(self._rank, -SAME) <= last]
+        self._running = running
 
-    def _keep(self, pairs: Pairs, slots: CapacitorSlots) -> None:
-        networks: dict[int, Network[int]] = {}
-        for row in range(len(pairs)):
-            slot = int(pairs.slot[row])
-            if slot not in networks:
-                networks[slot] = slots.rows.network(slot)
-            self._kept.append(
-                self._judge.pairing(
-                    pairs.rows.network(row), networks[slot], float(slots.leak[slot])
-                )
-            )
-        self._kept.sort(key=self._key)
-        if len(self._kept) > self._request.top:
-            last = self._key(self._kept[self._request.top - 1])
-            self._kept = [pairing for pairing in self._kept if self._key(pairing) <= last]
+    def _weighed(self) -> list[Pairing]:
+        """Weigh the pairs in the running exactly; keep the first places and their ties."""
+        key = order_key(self._rank)
+        pairings = sorted((self._pairing(runner) for runner in self._running), key=key)
+        if len(pairings) > self._top:
+            last = key(pairings[self._top - 1])
+            pairings = [pairing for pairing in pairings if key(pairing) <= last]
+        return pairings
+
+    def _pairing(self, runner: _Runner) -> Pairing:
+        slot = int(runner.pairs.slot[runner.row])
+        return self._judge.pairing(
+            runner.pairs.rows.network(runner.row),
+            runner.slots.rows.network(slot),
+            float(runner.slots.leak[slot]),
+        )
 
 
 class _Scene:

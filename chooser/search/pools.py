@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Hashable, Iterable
 from dataclasses import dataclass
+from operator import attrgetter
 
 import numpy as np
 from numpy.typing import NDArray
@@ -70,7 +71,7 @@ def gather(
     The pool, in an order that is always the same: by what adds, then by the smallest id.
     """
     grouped: dict[Hashable, list[Holding]] = {}
-    for holding in sorted(holdings, key=lambda holding: holding.id):
+    for holding in sorted(holdings, key=attrgetter("id")):
         if uses_of(holding, boards) > 0:
             grouped.setdefault(likeness(holding), []).append(holding)
     lots = [

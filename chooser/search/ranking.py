@@ -10,7 +10,7 @@ The tie-breaks are in `chooser.search.choosing`.
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from fractions import Fraction
 from typing import Any
@@ -55,6 +55,19 @@ class Pairing:
     ppm: int
 
 
+class _Exactly:
+    """The values of lots as fractions, each made when first asked for."""
+
+    def __init__(self, values: Sequence[float]) -> None:
+        self._values = values
+        self._made: dict[int, Fraction] = {}
+
+    def __call__(self, lot: int) -> Fraction:
+        if lot not in self._made:
+            self._made[lot] = exact(self._values[lot])
+        return self._made[lot]
+
+
 class Judge:
     """Calculates errors from exact network values.
 
@@ -65,17 +78,17 @@ class Judge:
 
     def __init__(self, request: Request, resistors: Pool, capacitors: Pool) -> None:
         self._request = request
-        self._ohm = [exact(value) for value in resistors.value.tolist()]
-        self._farad = [exact(value) for value in capacitors.value.tolist()]
+        self._ohm = _Exactly(resistors.value.tolist())
+        self._farad = _Exactly(capacitors.value.tolist())
         self._target = exact(request.target)
         self._drive = typical(request.timer, request.supply)
         self._values: dict[Network[int], Fraction] = {}
 
     def pairing(self, resistor: Network[int], capacitor: Network[int], leak: float) -> Pairing:
         """Weigh a pair of networks of lots; `leak` is the capacitor's in siemens."""
-        ohm = value_of(resistor, Join.SERIES, self._ohm.__getitem__)
+        ohm = value_of(resistor, Join.SERIES, self._ohm)
         if capacitor not in self._values:
-            self._values[capacitor] = value_of(capacitor, Join.PARALLEL, self._farad.__getitem__)
+            self._values[capacitor] = value_of(capacitor, Join.PARALLEL, self._farad)
         size = self.size_of_error(ohm, self._values[capacitor], leak)
         parts = sum(1 for _ in members(resistor)) + sum(1 for _ in members(capacitor))
         return Pairing(resistor, capacitor, parts, size, whole_ppm(size))

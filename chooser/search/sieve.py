@@ -14,8 +14,8 @@ from numpy.typing import NDArray
 
 from chooser.search.pools import Floats, Ints
 
-BITS = 15
-"""Buckets per octave as a power of two; 15 makes a map of a megabyte, which caches like."""
+BITS = 14
+"""Buckets per octave as a power of two; with 14 the map of a table stays in the cache."""
 
 WORTH = 50_000
 """Fewer windows than this are searched faster than sieved."""

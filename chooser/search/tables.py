@@ -280,7 +280,7 @@ class Tables:
         key = (size, adds)
         if key not in self._sieves:
             value = np.concatenate([self.groups(size, join).value for join in Join])
-            self._sieves[key] = Sieve(value if adds is Join.SERIES else 1 / value)
+            self._sieves[key] = Sieve(value if adds is Join.SERIES else 1 / value[::-1])
         return self._sieves[key]
 
     def _pairs(self) -> tuple[Ints, Ints]:

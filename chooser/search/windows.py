@@ -92,11 +92,16 @@ def _tables_of(tables: Tables, size: int) -> list[Rows]:
 
 
 def _in_table(table: Rows, low: Floats, high: Floats) -> Iterator[Found]:
+    if not len(table):
+        return
     first = np.searchsorted(table.value, low, "left")
-    last = np.searchsorted(table.value, high, "right")
-    for window, row in ragged(first, last):
+    # Most windows are empty, which one comparison tells; only the others need their end found.
+    held = np.flatnonzero(np.take(table.value, first, mode="clip") <= high)
+    held = held[first[held] < len(table)]
+    last = np.searchsorted(table.value, high[held], "right")
+    for window, row in ragged(first[held], last):
         if len(window):
-            yield Found(window, table.take(row))
+            yield Found(held[window], table.take(row))
 
 
 def _in_groups(tables: Tables, size: int, join: Join, low: Floats, high: Floats) -> Iterator[Found]:
