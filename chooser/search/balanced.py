@@ -35,6 +35,9 @@ PER_PART = 1.10
 PER_VARIATION = 1.50
 """Each further fit on the same main capacitor must be better by this factor to get a place."""
 
+MOST_VARIATIONS = 30
+"""Variations after which the handicap grows no more: it is beyond any difference long before."""
+
 OUTSIDE = 1e6
 """Added to the score outside the band: every fit inside comes first; scores stay far below."""
 
@@ -62,11 +65,13 @@ class Weighed:
         rows = self.rows.take(kept)
         return Weighed(self.slots, self.score[kept], self.slot[kept], rows, self.space)
 
-    def values_of(self, row: int) -> tuple[tuple[float, ...], tuple[float, ...]]:
-        """Return the values of a circuit's parts, in ohm and farad, sorted."""
-        ohm = self.space.resistors.value[self.rows.leaves[row]]
-        farad = self.space.capacitors.value[self.slots.rows.leaves[self.slot[row]]]
-        return tuple(sorted(ohm.tolist())), tuple(sorted(farad.tolist()))
+    def values_of(self, rows: Ints) -> list[tuple[tuple[float, ...], tuple[float, ...]]]:
+        """Return the values of some circuits' parts, in ohm and farad, each sorted."""
+        ohm = np.sort(self.space.resistors.value[self.rows.leaves[rows]], axis=1)
+        leaves = self.slots.rows.leaves[self.slot[rows]]
+        farad = np.sort(self.space.capacitors.value[leaves], axis=1)
+        pairs = zip(ohm.tolist(), farad.tolist(), strict=True)
+        return [(tuple(ohms), tuple(farads)) for ohms, farads in pairs]
 
 
 class BalancedSearch:
@@ -192,7 +197,7 @@ def _front(levels: list[Weighed], wanted: int) -> _Front:
     level = np.repeat(np.arange(len(levels)), [len(each.score) for each in levels])
     row = np.concatenate([np.arange(len(each.score)) for each in levels])
     score = np.concatenate([each.score for each in levels])
-    keep = 64 * wanted
+    keep = 16 * wanted
     while True:
         best = np.argsort(score, kind="stable")[:keep]
         best = best[_first_of_values(levels, level[best], row[best])]
@@ -202,7 +207,7 @@ def _front(levels: list[Weighed], wanted: int) -> _Front:
         enough = len(best) >= wanted and np.sort(handicapped)[wanted - 1] <= score[best[-1]]
         if enough or keep >= len(score):
             return _Front(level[best], row[best], score[best], handicapped)
-        keep *= 8
+        keep *= 4
 
 
 def _first_of_values(levels: list[Weighed], level: Ints, row: Ints) -> Ints:
@@ -210,27 +215,28 @@ def _first_of_values(levels: list[Weighed], level: Ints, row: Ints) -> Ints:
 
     Other arrangements of the same parts, and equal values from other drawers, are no other answer.
     """
-    seen: set[tuple[object, ...]] = set()
-    kept = []
-    for place, (number, index) in enumerate(zip(level.tolist(), row.tolist(), strict=True)):
-        weighed = levels[number]
-        values = weighed.values_of(index)
-        if values not in seen:
-            seen.add(values)
-            kept.append(place)
-    return np.array(kept, dtype=np.int64)
+    values: dict[int, tuple[object, ...]] = {}
+    for number, weighed in enumerate(levels):
+        places = np.flatnonzero(level == number)
+        found = weighed.values_of(row[places])
+        values.update(zip(places.tolist(), found, strict=True))
+    seen: dict[tuple[object, ...], int] = {}
+    for place in range(len(level)):
+        seen.setdefault(values[place], place)
+    return np.array(list(seen.values()), dtype=np.int64)
 
 
-def _handicap(weighed: list[Weighed], level: Ints, row: Ints) -> Floats:
+def _handicap(levels: list[Weighed], level: Ints, row: Ints) -> Floats:
     """Return PER_VARIATION to the number of better fits on the same main capacitor."""
-    times: dict[int, int] = {}
-    handicap = []
-    for number, index in zip(level.tolist(), row.tolist(), strict=True):
-        each = weighed[number]
-        main = int(each.slots.main[each.slot[index]])
-        times[main] = times.get(main, -1) + 1
-        handicap.append(PER_VARIATION ** times[main])
-    return np.array(handicap)
+    main = np.empty(len(level), dtype=np.int64)
+    for number, weighed in enumerate(levels):
+        places = np.flatnonzero(level == number)
+        main[places] = weighed.slots.main[weighed.slot[row[places]]]
+    order = np.argsort(main, kind="stable")
+    ranked = main[order]
+    times = np.empty(len(main), dtype=np.int64)
+    times[order] = np.arange(len(main)) - np.searchsorted(ranked, ranked, "left")
+    return np.asarray(PER_VARIATION ** np.minimum(times, MOST_VARIATIONS))
 
 
 def _places(levels: list[Weighed], wanted: int) -> list[tuple[Weighed, int]]:

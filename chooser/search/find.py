@@ -44,7 +44,7 @@ def find_fits(holdings: Iterable[Holding], request: Request) -> Answer:
     check_supply(request.timer, request.supply)
     stock = tuple(holdings)
     usable = usable_parts(stock, request)
-    found, limit = _search(usable, request)
+    found, limit = search_choices(usable, request)
     by_id = {holding.id: holding for holding in stock}
     fits = [fit_of(choice, by_id, request) for choice in found]
     for fit in fits:
@@ -64,8 +64,17 @@ def find_fits(holdings: Iterable[Holding], request: Request) -> Answer:
     )
 
 
-def _search(usable: Usable, request: Request) -> tuple[list[Choice], str]:
-    """Return the choices that get a place, and what could not be covered."""
+def search_choices(usable: Usable, request: Request) -> tuple[list[Choice], str]:
+    """Search alone, without working out what each choice will do.
+
+    Parameters
+    ----------
+    usable : what the house rules left. request : what is wanted.
+
+    Returns
+    -------
+    The choices that get a place, best first, and what could not be covered, or "".
+    """
     space = Space(usable.resistors, usable.capacitors, request)
     if not space.resistors.lots or not space.capacitors.lots:
         return [], ""
