@@ -128,7 +128,7 @@ def plentiful(uses: dict[int, int], taken: list[int]) -> float:
     )
 
 
-def ranked(
+def ranked(  # noqa: PLR0917 - the question has six parts
     ohms: dict[int, tuple[float, int | None]],
     farads: dict[int, tuple[float, int | None]],
     target: float,

@@ -186,7 +186,9 @@ def tolerances_of(text, tolerance):
 
 def test_series_of_unequal_tolerances():
     """By hand: 100k 1 % + 10k 5 % is (1 + 0.5) / 110 = 1.36364 % in the worst case."""
-    found = tolerances_of("100e3 + 10e3", {100e3: Tolerance(0.01, 0.01), 10e3: Tolerance(0.05, 0.05)})
+    found = tolerances_of(
+        "100e3 + 10e3", {100e3: Tolerance(0.01, 0.01), 10e3: Tolerance(0.05, 0.05)}
+    )
     assert found.value == 110e3
     assert found.high / found.value - 1 == pytest.approx(0.0136364, abs=5e-8)
     assert 1 - found.low / found.value == pytest.approx(0.0136364, abs=5e-8)
@@ -304,11 +306,11 @@ def test_mixed_signs_inside_brackets_are_refused_too():
         read("5 + (1 + 2 || 3)")
 
 
-@pytest.mark.parametrize(
-    "text",
-    ["", " ", "+", "1 +", "+ 1", "1 | 2", "1 ||| 2", "(1", "1)", "()", "(1) 2", "1 + (2", "1 + + 2"]
-    + ["(" * (DEEPEST_BRACKETS + 1) + "1" + ")" * (DEEPEST_BRACKETS + 1), "(" * 10_000],
-)
+NONSENSE = ("", " ", "+", "1 +", "+ 1", "1 | 2", "1 ||| 2", "(1", "1)", "()", "(1) 2", "1 + (2")
+TOO_DEEP = "(" * (DEEPEST_BRACKETS + 1) + "1" + ")" * (DEEPEST_BRACKETS + 1)
+
+
+@pytest.mark.parametrize("text", [*NONSENSE, "1 + + 2", TOO_DEEP, "(" * 10_000])
 def test_what_is_no_network_is_refused_in_a_sentence(text):
     with pytest.raises(UnreadableValueError) as refusal:
         read(text)

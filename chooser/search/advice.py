@@ -7,9 +7,10 @@ from collections.abc import Collection, Sequence
 from chooser.circuits.leakage import leak_conductance
 from chooser.circuits.monostable import resistance, typical
 from chooser.parts import Holding, Kind
-from chooser.search.house_rules import Usable, leak_bound, resistor_limits
+from chooser.search.house_rules import LEAST_FARAD, Usable, leak_bound, resistor_limits
 from chooser.search.purchase import one_purchase
 from chooser.search.request import Fit, Request
+from chooser.search.terms import Rule
 
 TOO_LONG = (
     "Every capacitor here would need a resistor beyond what the timer's currents and the leakage "
@@ -49,11 +50,19 @@ def advice_for(
     missing = _missing(stock, usable)
     if missing:
         return missing
+    if Rule.STRAYS not in request.lifted and _most_farad(usable, request) < LEAST_FARAD:
+        return (ALL_SMALL,)
     bought = one_purchase(usable.resistors, usable.capacitors, request)
     reason = _out_of_reach(usable, request)
     if bought is None and not reason:
         return (NO_PURCHASE,)
     return (*reason, *([str(bought)] if bought else []))
+
+
+ALL_SMALL = (
+    "All the capacitors that may be used come to less than 1n together, where strays count; add "
+    f"larger ones, or --allow {Rule.STRAYS} and time the built circuit."
+)
 
 
 def _missing(stock: Sequence[Holding], usable: Usable) -> tuple[str, ...]:
@@ -73,6 +82,12 @@ def _missing(stock: Sequence[Holding], usable: Usable) -> tuple[str, ...]:
         else:
             said.append(f"The house rules keep out every {kind}; see what was left out, and why.")
     return tuple(said)
+
+
+def _most_farad(usable: Usable, request: Request) -> float:
+    """Return a capacitance in farad that no network of the usable capacitors exceeds."""
+    largest = max(holding.part.effective for holding in usable.capacitors)
+    return largest * request.most_capacitors * (1 + 1e-9)
 
 
 def _out_of_reach(usable: Usable, request: Request) -> tuple[str, ...]:

@@ -103,10 +103,15 @@ def tie_break(choice: Choice, resistors: Drawers, capacitors: Drawers) -> tuple[
     """Return the part of the sort key that settles equal errors and parts."""
     ohms, farads = sorted(members(choice.resistor)), sorted(members(choice.capacitor))
     plenty = min(
-        *(resistors.uses[number] // ohms.count(number) for number in ohms),
-        *(capacitors.uses[number] // farads.count(number) for number in farads),
+        *(_times(resistors.uses[number], ohms.count(number)) for number in ohms),
+        *(_times(capacitors.uses[number], farads.count(number)) for number in farads),
     )
     return (-plenty, ohms, farads, _written(choice.resistor), _written(choice.capacitor))
+
+
+def _times(uses: int, pieces: int) -> int:
+    """Tell how many times so many pieces can be taken; of a plenty always as often."""
+    return uses if uses >= PLENTY else uses // pieces
 
 
 def _written(network: Network[int]) -> str:

@@ -29,10 +29,15 @@ from chooser.search.terms import Rank
 from chooser.search.windows import ROUNDING, Found, find_in_windows
 
 SAME = 1e-12
-"""Errors nearer to each other than this are left to the exact comparison."""
+"""Interval ratios nearer to each other than this, relative, are left to the exact comparison."""
 
 LARGE = 0.02
 """Errors from here on have their windows from the inverse instead of from the growth."""
+
+
+def doubt(error: float) -> float:
+    """Return how far rounding may have moved an error."""
+    return SAME * (1 + error)
 
 
 @dataclass(frozen=True, slots=True)
@@ -61,7 +66,7 @@ class Pairs:
         if len(self) <= wanted:
             return self
         last = np.partition(self.error, wanted - 1)[wanted - 1]
-        return self.only(self.error <= last + SAME)
+        return self.only(self.error <= last + doubt(last))
 
 
 @dataclass(frozen=True, slots=True)
@@ -80,15 +85,12 @@ class _Runner:
     row: int
     slots: CapacitorSlots
 
-    def key(self, rank: Rank, doubt: float) -> tuple[float, ...]:
-        """Return the sort key, with the error and its ppm moved by what rounding may hide."""
+    def key(self, rank: Rank, sign: int) -> tuple[float, ...]:
+        """Return the sort key at the worst (+1) or best (-1) that rounding may hide."""
+        error = self.error + sign * doubt(self.error)
         if rank is Rank.COUNT:
-            return (self.parts, self.error + doubt)
-        return (self.ppm(doubt), self.parts, self.error + doubt)
-
-    def ppm(self, doubt: float) -> int:
-        """Return the error in whole parts per million, halves up."""
-        return int((self.error + doubt) / PPM + 0.5)
+            return (self.parts, error)
+        return (int(error / PPM + 0.5), self.parts, error)
 
 
 class ExactSearch:
@@ -124,10 +126,11 @@ class ExactSearch:
             return inf
         last = self._running[self._top - 1]
         if last.parts == parts:
-            return last.error + SAME
+            return last.error + doubt(last.error)
         if self._rank is Rank.COUNT:
             return -1.0
-        return (last.ppm(SAME) - 0.5) * PPM + SAME
+        bound = (last.key(self._rank, +1)[0] - 0.5) * PPM
+        return bound + doubt(bound)
 
     def _enter(self, pairs: Pairs, parts: int, slots: CapacitorSlots) -> None:
         """Let pairs run; drop those that surely stand behind the last place."""
@@ -135,10 +138,10 @@ class ExactSearch:
         running = self._running + [
             _Runner(error, parts, pairs, row, slots) for row, error in enumerate(errors)
         ]
-        running.sort(key=lambda runner: runner.key(self._rank, SAME))
+        running.sort(key=lambda runner: runner.key(self._rank, +1))
         if len(running) > self._top:
-            last = running[self._top - 1].key(self._rank, SAME)
-            running = [runner for runner in running if runner.key(self._rank, -SAME) <= last]
+            last = running[self._top - 1].key(self._rank, +1)
+            running = [runner for runner in running if runner.key(self._rank, -1) <= last]
         self._running = running
 
     def _weighed(self) -> list[Pairing]:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
+from operator import attrgetter
 from time import perf_counter
 
 from chooser.circuits.timers import check_supply
@@ -12,10 +13,10 @@ from chooser.search.balanced import BalancedSearch
 from chooser.search.choosing import Choice, Drawers, best_choice, choices
 from chooser.search.exact import ExactSearch
 from chooser.search.fits import explained, fit_of
-from chooser.search.house_rules import Usable, check_part_numbers, limits_refusal, usable_parts
+from chooser.search.house_rules import Usable, check_part_numbers, usable_parts
 from chooser.search.ranking import Judge
 from chooser.search.recheck import recheck
-from chooser.search.request import Answer, Refusal, Request, Searched
+from chooser.search.request import Answer, Request, Searched
 from chooser.search.space import Space, combinations
 from chooser.search.terms import Rank
 
@@ -42,7 +43,7 @@ def find_fits(holdings: Iterable[Holding], request: Request) -> Answer:
     start = perf_counter()
     check_part_numbers(request)
     check_supply(request.timer, request.supply)
-    stock = tuple(holdings)
+    stock = tuple(sorted(holdings, key=attrgetter("id")))
     usable = usable_parts(stock, request)
     found, limit = search_choices(usable, request)
     by_id = {holding.id: holding for holding in stock}
@@ -59,7 +60,7 @@ def find_fits(holdings: Iterable[Holding], request: Request) -> Answer:
         request=request,
         fits=explained(fits, request.rank),
         searched=searched,
-        refusals=_refusals(usable, request),
+        refusals=usable.refusals,
         advice=advice_for(stock, usable, fits, request),
     )
 
@@ -86,8 +87,3 @@ def search_choices(usable: Usable, request: Request) -> tuple[list[Choice], str]
     found, complete = choices(ExactSearch(space, judge).pairings(), *drawers, request)
     limit = "" if complete else "not every way to take equal parts from drawers was weighed"
     return found[: request.top], space.limit or limit
-
-
-def _refusals(usable: Usable, request: Request) -> tuple[Refusal, ...]:
-    limits = limits_refusal(request)
-    return usable.refusals if limits is None else (*usable.refusals, limits)

@@ -5,7 +5,7 @@ Every rule holds unless it is lifted, and whatever it keeps out is said with the
 
 from __future__ import annotations
 
-from collections.abc import Callable, Collection, Iterable
+from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -13,8 +13,8 @@ from numpy.typing import ArrayLike, NDArray
 
 from chooser.circuits.monostable import Drive, limits
 from chooser.errors import BadRequestError
-from chooser.parts import Holding, Kind
-from chooser.quantities import format_resistance, format_voltage
+from chooser.parts import Holding, Kind, Part
+from chooser.quantities import format_capacitance, format_resistance, format_voltage
 from chooser.search.request import Refusal, Request
 from chooser.search.terms import REASONS, USUAL_PARTS, Rule
 from chooser.technologies import technology_of
@@ -73,15 +73,36 @@ def usable_parts(holdings: Iterable[Holding], request: Request) -> Usable:
     capacitors = [holding for holding in stock if holding.part.kind is Kind.CAPACITOR]
     refusals: list[Refusal] = []
     if Rule.CERAMIC not in request.lifted:
-        capacitors = _sift(capacitors, _is_class_2, Rule.CERAMIC, "ceramic", refusals)
+        out = [holding for holding in capacitors if _is_class_2(holding)]
+        capacitors = _without(capacitors, out, Rule.CERAMIC, "of ceramic", refusals)
     if Rule.VOLTAGE not in request.lifted:
-
-        def too_low(holding: Holding) -> bool:
-            return holding.part.voltage is not None and holding.part.voltage < request.supply
-
-        what = f"under {format_voltage(request.supply)}"
-        capacitors = _sift(capacitors, too_low, Rule.VOLTAGE, what, refusals)
+        out = [holding for holding in capacitors if _is_rated_below(holding, request.supply)]
+        what = f"rated below {format_voltage(request.supply)}"
+        capacitors = _without(capacitors, out, Rule.VOLTAGE, what, refusals)
+    refusals += _network_refusals(capacitors, request)
     return Usable(tuple(resistors), tuple(capacitors), tuple(refusals))
+
+
+def _network_refusals(capacitors: Sequence[Holding], request: Request) -> Iterator[Refusal]:
+    """Say which networks of usable parts the rules keep out."""
+    small = [holding for holding in capacitors if holding.part.effective < LEAST_FARAD]
+    if small and Rule.STRAYS not in request.lifted:
+        least = format_capacitance(LEAST_FARAD)
+        why = f"Timing capacitances below {least} are left out: {REASONS[Rule.STRAYS]}."
+        yield Refusal(Rule.STRAYS, why)
+    polarised = [holding for holding in capacitors if is_polarised(holding.part)]
+    if polarised and request.most_capacitors > 1 and Rule.POLARISED_SERIES not in request.lifted:
+        why = f"Series of polarised capacitors are left out: {REASONS[Rule.POLARISED_SERIES]}."
+        yield Refusal(Rule.POLARISED_SERIES, why)
+    least_ohm, most_ohm = resistor_limits(request)
+    if 0 < least_ohm < most_ohm < float("inf"):
+        yield Refusal(
+            Rule.RESISTOR_LIMITS,
+            f"Timing resistances stay between {format_resistance(least_ohm, digits=3)} "
+            f"(discharge-pin current) and {format_resistance(most_ohm, digits=3)} (the "
+            f"{request.timer.name} timer's own currents and board leakage), less where the "
+            "capacitor leaks.",
+        )
 
 
 def resistor_limits(request: Request) -> tuple[float, float]:
@@ -109,17 +130,10 @@ def leak_bound(leak: ArrayLike, drive: Drive) -> NDArray[np.float64]:
         return np.asarray((1 - drive.threshold) / (LEAK_RATIO * drive.threshold * np.asarray(leak)))
 
 
-def limits_refusal(request: Request) -> Refusal | None:
-    """Say the timer's limits of the timing resistor, where there are any."""
-    least, most = resistor_limits(request)
-    if not 0 < least < most < float("inf"):
-        return None
-    return Refusal(
-        Rule.RESISTOR_LIMITS,
-        f"Timing resistors stay between {format_resistance(least, digits=3)} (discharge-pin "
-        f"current) and {format_resistance(most, digits=3)} (the {request.timer.name} timer's own "
-        "currents and board leakage), less where the capacitor leaks.",
-    )
+def is_polarised(part: Part) -> bool:
+    """Tell whether reverse voltage destroys the part; unknown technologies count as unpolarised."""
+    technology = technology_of(part)
+    return technology is not None and technology.polarised
 
 
 def _is_class_2(holding: Holding) -> bool:
@@ -127,17 +141,21 @@ def _is_class_2(holding: Holding) -> bool:
     return technology is not None and technology.ceramic_class > 1
 
 
-def _sift(
-    holdings: Collection[Holding],
-    refused: Callable[[Holding], bool],
+def _is_rated_below(holding: Holding, supply: float) -> bool:
+    return holding.part.voltage is not None and holding.part.voltage < supply
+
+
+def _without(
+    holdings: Sequence[Holding],
+    out: Sequence[Holding],
     rule: Rule,
     what: str,
     refusals: list[Refusal],
 ) -> list[Holding]:
-    """Keep what is not refused; note what is."""
-    out = [holding for holding in holdings if refused(holding)]
+    """Take some holdings out, and note why."""
     if out:
-        noun = "capacitor" if len(out) == 1 else "capacitors"
-        why = f"{len(out)} {what} {noun} left out: {REASONS[rule]}."
+        noun = "capacitor holding" if len(out) == 1 else "capacitor holdings"
+        why = f"{len(out)} {noun} {what} left out: {REASONS[rule]}."
         refusals.append(Refusal(rule, why, tuple(holding.id for holding in out)))
-    return [holding for holding in holdings if not refused(holding)]
+    gone = {holding.id for holding in out}
+    return [holding for holding in holdings if holding.id not in gone]

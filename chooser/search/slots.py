@@ -13,12 +13,11 @@ from chooser.circuits.leakage import leak_conductance
 from chooser.circuits.monostable import endless_from, resistance, typical
 from chooser.networks import Group, Join, Leaf
 from chooser.parts import Holding, Part, Tolerance
-from chooser.search.house_rules import LEAST_FARAD, leak_bound, resistor_limits
+from chooser.search.house_rules import LEAST_FARAD, is_polarised, leak_bound, resistor_limits
 from chooser.search.pools import Floats, Pool, gather
 from chooser.search.request import Request
 from chooser.search.tables import Rows, Shape, Tables, every_network
 from chooser.search.terms import Rank, Rule
-from chooser.technologies import technology_of
 from chooser.uncertainty import limits_of
 
 
@@ -49,12 +48,6 @@ def capacitor_pool(holdings: Sequence[Holding], request: Request) -> Pool:
 def leak_of(part: Part, request: Request) -> float:
     """Return the typical leak conductance in siemens; none for the ideal timer."""
     return 0.0 if request.timer.ideal else leak_conductance(part, request.supply).typical
-
-
-def is_polarised(part: Part) -> bool:
-    """Tell whether reverse voltage destroys the part; unknown technologies count as unpolarised."""
-    technology = technology_of(part)
-    return technology is not None and technology.polarised
 
 
 @dataclass(frozen=True, slots=True)
@@ -118,15 +111,9 @@ def _slots(rows: Rows, pool: Pool, leaks: Floats, request: Request) -> Capacitor
 
 
 def _main_lots(rows: Rows, farad: Floats) -> NDArray[np.int32]:
-    """Return the lot that rules each network: the largest in parallel, the smallest in series."""
-    main = np.empty(len(rows), dtype=np.int32)
-    for number, shape in enumerate(rows.shapes):
-        chosen = np.flatnonzero(rows.shape == number)
-        leaves = rows.leaves[chosen]
-        series = isinstance(shape, Group) and shape.join is Join.SERIES
-        column = (np.argmin if series else np.argmax)(farad[leaves], axis=1)
-        main[chosen] = leaves[np.arange(len(chosen)), column]
-    return main
+    """Return the lot with the greatest share of each network's capacitance."""
+    column = np.argmax(rows.shares(farad, Join.PARALLEL), axis=1)
+    return np.asarray(rows.leaves[np.arange(len(rows)), column])
 
 
 def _together(pieces: Sequence[CapacitorSlots]) -> CapacitorSlots:

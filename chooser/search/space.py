@@ -7,13 +7,13 @@ from dataclasses import dataclass
 
 from chooser.parts import Holding
 from chooser.search.counting import networks_from, networks_from_polarised
+from chooser.search.house_rules import is_polarised
 from chooser.search.pools import Pool, uses_of
 from chooser.search.request import Request
 from chooser.search.slots import (
     CapacitorSlots,
     capacitor_pool,
     capacitor_slots,
-    is_polarised,
     resistor_pool,
 )
 from chooser.search.tables import Tables

@@ -122,6 +122,26 @@ class Rows:
                 result[chosen] = _fold(shape, of[self.leaves[chosen]], adds)
         return result
 
+    def shares(self, of: Floats, adds: Join) -> Floats:
+        """Tell how much of a small relative change of each part reaches its network's value.
+
+        Parameters
+        ----------
+        of : (parts,) the value of each part, > 0. adds : the join under which the values add.
+
+        Returns
+        -------
+        (n, size) shares in the order of `leaves`; see `chooser.networks.shares_of`.
+        """
+        result = np.empty(self.leaves.shape)
+        for number, shape in enumerate(self.shapes):
+            chosen = np.flatnonzero(self.shape == number)
+            if len(chosen):
+                columns = _fold_shares(shape, of[self.leaves[chosen]], adds)[1]
+                for column, share in columns.items():
+                    result[chosen, column] = share
+        return result
+
     def evaluate_shares(self, of: Floats, relative: Floats, adds: Join) -> Floats:
         """Add up relative figures of the parts, each weighted by the part's share of the value.
 
@@ -132,28 +152,29 @@ class Rows:
 
         Returns
         -------
-        (n,) sums of share x figure; see `chooser.networks.shares_of`.
+        (n,) sums of share x figure.
         """
-        result = np.empty(len(self))
-        for number, shape in enumerate(self.shapes):
-            chosen = np.flatnonzero(self.shape == number)
-            if len(chosen):
-                leaves = self.leaves[chosen]
-                result[chosen] = _fold_shares(shape, of[leaves], relative[leaves], adds)[1]
-        return result
+        return np.asarray(np.sum(self.shares(of, adds) * relative[self.leaves], axis=1))
 
 
 def _fold_shares(
-    shape: Shape, values: Floats, figures: Floats, adds: Join
-) -> tuple[Floats, Floats]:
+    shape: Shape, values: Floats, adds: Join
+) -> tuple[Floats, dict[int, Floats | float]]:
+    """Return the value of every row, and the shares by leaf column."""
     if isinstance(shape, Leaf):
-        return values[:, shape.member], figures[:, shape.member]
-    children = [_fold_shares(child, values, figures, adds) for child in shape.children]
+        return values[:, shape.member], {shape.member: 1.0}
+    children = [_fold_shares(child, values, adds) for child in shape.children]
     if shape.join is adds:
         whole = np.sum([value for value, _ in children], axis=0)
-        return whole, np.sum([value / whole * figure for value, figure in children], axis=0)
-    whole = 1 / np.sum([1 / value for value, _ in children], axis=0)
-    return whole, np.sum([whole / value * figure for value, figure in children], axis=0)
+        weights = [value / whole for value, _ in children]
+    else:
+        whole = 1 / np.sum([1 / value for value, _ in children], axis=0)
+        weights = [whole / value for value, _ in children]
+    return whole, {
+        column: weight * share
+        for weight, (_, shares) in zip(weights, children, strict=True)
+        for column, share in shares.items()
+    }
 
 
 def _fold(shape: Shape, figures: Floats, adds: Join) -> Floats:

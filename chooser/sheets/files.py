@@ -47,9 +47,9 @@ def read_file(path: Path) -> tuple[Grid, ...]:
     SheetError
         It cannot be read, or is no such file.
     """
-    if not path.exists():
-        refuse(str(path), "does not exist", "check the name and the folder")
     if path.suffix.lower() not in _SUFFIXES:
+        if not path.exists():
+            refuse(str(path), "does not exist", "check the name and the folder")
         refuse(str(path), "is neither .csv nor .xlsx", "save the sheet as one of these")
     data = _content(path)
     if path.suffix.lower() == ".xlsx":

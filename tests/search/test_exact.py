@@ -104,7 +104,9 @@ def test_the_first_answers_of_thousands_of_stocks(monkeypatch, path, seed):
 def test_the_sieved_path_is_really_taken(monkeypatch, seed):
     """One part at 3 ppm makes the windows narrow; three at 0 ppm must still be found."""
     rnd = random.Random(f"sieve {seed}")
-    holdings = [resistor(number, float(f"{10 ** rnd.uniform(3, 5):.4g}")) for number in range(1, 13)]
+    holdings = [
+        resistor(number, float(f"{10 ** rnd.uniform(3, 5):.4g}")) for number in range(1, 13)
+    ]
     holdings += [capacitor(20, 1e-7), capacitor(21, 4.683e-7)]
     asked_for, passed = 0, 0
 

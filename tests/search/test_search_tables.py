@@ -156,7 +156,9 @@ def check_all(values, uses, most):
         assert len(listed) == len(set(listed)) == made.count(size)
         assert set(listed) == set(expected)
         for rows in every_network(made, size):
-            exact = [float(oracle.value(plain(rows.network(i)), worth, "+")) for i in range(len(rows))]
+            exact = [
+                float(oracle.value(plain(rows.network(i)), worth, "+")) for i in range(len(rows))
+            ]
             np.testing.assert_allclose(rows.value, exact, rtol=1e-14)
             assert (np.diff(rows.value) >= 0).all()
 

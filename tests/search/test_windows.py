@@ -141,9 +141,7 @@ def test_ragged_lays_out_every_range(most, ranges):
         pieces = list(ragged(first, last))
     finally:
         windows.MOST_PAIRS = kept
-    laid = [
-        (int(owner), int(item)) for piece in pieces for owner, item in zip(*piece, strict=True)
-    ]
+    laid = [(int(owner), int(item)) for piece in pieces for owner, item in zip(*piece, strict=True)]
     assert laid == [
         (number, item) for number, pair in enumerate(ranges) for item in range(pair[0], pair[1])
     ]

@@ -41,7 +41,7 @@ def test_nothing_named_is_nothing_read():
     ("name", "says"),
     [
         ("missing.csv", "does not exist"),
-        ("missing", "neither .csv nor .xlsx"),
+        ("missing", "does not exist"),
         ("stock.ods", "neither .csv nor .xlsx"),
         ("empty", "without any .csv or .xlsx"),
         ("bad\0name.csv", "cannot be read"),
