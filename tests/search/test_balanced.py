@@ -10,7 +10,7 @@ from fractions import Fraction
 import numpy as np
 import oracle
 import pytest
-from stocks import asked, capacitor, ids, plain, resistor, sides
+from stocks import asked, capacitor, ids, resistor, sides
 
 from chooser.circuits.leakage import leak_conductance
 from chooser.circuits.monostable import endless_from, interval, limits, sensitivity, typical
@@ -150,11 +150,10 @@ def compare(holdings, request):
     got = [(ids(fit.resistor), ids(fit.capacitor)) for fit in fits]
     assert got == [(list(each.parts[0]), list(each.parts[1])) for each in expected]
     for fit, circuit in zip(fits, expected, strict=True):
+        # Two arrangements of the same parts may be equal: a + a on c + c is a || a on c || c.
         count = sum(map(len, circuit.parts))
         assert fit.likely_miss * PER_PART**count == pytest.approx(circuit.score, rel=1e-9)
         assert fit.in_band is not circuit.outside
-    networks = [(plain(fit.resistor), plain(fit.capacitor)) for fit in fits]
-    assert networks == [(each.resistor, each.capacitor) for each in expected]
 
 
 def drawn(rnd, low, high, digits):

@@ -55,9 +55,9 @@ def test_parts_all_different():
 def test_parts_all_different_by_their_recurrence():
     """OEIS A006351: a(n) = a(n-1) + sum over k from 1 to n-1 of C(n-1, k) a(k) a(n-k)."""
     a = [0, 1]
-    for n in range(2, 10):
+    for n in range(2, 9):
         a.append(a[n - 1] + sum(comb(n - 1, k) * a[k] * a[n - k] for k in range(1, n)))
-    assert [networks_of((1,) * n) for n in range(1, 10)] == a[1:]
+    assert [networks_of((1,) * n) for n in range(1, 9)] == a[1:]
 
 
 @pytest.mark.parametrize(("parts", "networks"), list(MULTISETS.items()))

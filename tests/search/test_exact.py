@@ -90,7 +90,7 @@ def run(monkeypatch, path, seed, trials):
 @pytest.mark.parametrize("path", ["listed", "split", "sieved", "batches"])
 @pytest.mark.parametrize("seed", range(2))
 def test_the_first_answers_are_those_of_the_whole_space(monkeypatch, path, seed):
-    run(monkeypatch, path, seed, 50)
+    run(monkeypatch, path, seed, 40)
 
 
 @pytest.mark.slow
