@@ -21,7 +21,7 @@ from chooser.circuits.monostable import Drive, interval, sensitivity, typical
 from chooser.interval import likely_miss, mean_of, spread_of
 from chooser.networks import Join
 from chooser.search.exact import SAME
-from chooser.search.nearest import Near, Wish, nearest
+from chooser.search.nearest import Near, Wish, nearest, reach
 from chooser.search.pools import Floats, Ints
 from chooser.search.ranking import Judge, Pairing
 from chooser.search.slots import CapacitorSlots, lot_tolerances
@@ -91,18 +91,22 @@ class BalancedSearch:
 
     def pairings(self) -> list[Pairing]:
         """Return the pairings of lots that get the places, best first."""
-        last = inf
+        front = _Front.none()
         for level in self._space.levels():
             slots = self._space.slots(level.capacitors)
             if slots is not None and len(slots):
-                self._weigh(level, slots, last)
-                last = self._last_place()
-        return [self._pairing(weighed, row) for weighed, row in _places(self._weighed, self._top)]
+                self._weigh(level, slots, front)
+                front = self._trimmed()
+        return [
+            self._pairing(self._weighed[front.level[place]], int(front.row[place]))
+            for place in front.places(self._top)
+        ]
 
-    def _weigh(self, level: Level, slots: CapacitorSlots, last: float) -> None:
+    def _weigh(self, level: Level, slots: CapacitorSlots, front: _Front) -> None:
         """Weigh one level, but only where it could still get a place."""
-        floor = self._weigher.least_score(slots, level.parts)
-        chosen = np.flatnonzero((floor < last) & (slots.least <= slots.most))
+        last = front.last(self._top)
+        floor = self._weigher.least_score(slots, level)
+        chosen = np.flatnonzero(front.beside(slots.main, floor) < last)
         wish = Wish(slots.wanted[chosen], slots.least[chosen], slots.most[chosen])
         near = nearest(self._space.resistor_tables, level.resistors, wish, NEAREST)
         near = Near(chosen[near.owner], near.rows)
@@ -110,16 +114,18 @@ class BalancedSearch:
         weighed = Weighed(slots, score, near.owner, near.rows, self._space)
         self._weighed.append(weighed.only(score <= last))
 
-    def _last_place(self) -> float:
-        """Return the score that a further circuit must beat; drop what no longer can."""
-        if not any(len(each.score) for each in self._weighed):
-            return inf
+    def _trimmed(self) -> _Front:
+        """Return the front, and drop what can no longer get a place."""
         front = _front(self._weighed, self._top)
-        if len(front.score) < self._top:
-            return inf
-        last = float(np.partition(front.handicapped, self._top - 1)[self._top - 1])
-        self._weighed = [each.only(each.score <= last) for each in self._weighed]
-        return last
+        last = front.last(self._top)
+        if last < inf:
+            kept = [each.score <= last for each in self._weighed]
+            self._weighed = [
+                each.only(mask) for each, mask in zip(self._weighed, kept, strict=True)
+            ]
+            # Rows keep their order when others are dropped, so the front counts anew.
+            front = front.renumbered([np.cumsum(mask) - 1 for mask in kept])
+        return front
 
     def _pairing(self, weighed: Weighed, row: int) -> Pairing:
         slot = int(weighed.slot[row])
@@ -136,6 +142,7 @@ class _Weigher:
     def __init__(self, space: Space) -> None:
         self._request = space.request
         self._drive: Drive = typical(space.request.timer, space.request.supply)
+        self._tables = space.resistor_tables
         self._ohm, self._farad = space.resistors.value, space.capacitors.value
         of_r, of_c = lot_tolerances(space.resistors), lot_tolerances(space.capacitors)
         self._r_spread = np.array([tolerance.spread for tolerance in of_r])
@@ -143,23 +150,26 @@ class _Weigher:
         self._c_spread = np.array([tolerance.spread for tolerance in of_c])
         self._c_shift = np.array([tolerance.shift for tolerance in of_c])
 
-    def least_score(self, slots: CapacitorSlots, parts: int) -> Floats:
-        """Return a score that no circuit of so many parts on a capacitor network can be below.
+    def least_score(self, slots: CapacitorSlots, level: Level) -> Floats:
+        """Return a score that no circuit of a level on a capacitor network can be below.
 
         The spread is at least that of the capacitors and the best resistor. Where the wanted
-        resistance lies outside its limits, the interval misses by at least as much as it does,
-        because the interval grows at least in proportion to R.
+        resistance lies outside what may be or can be, the interval misses by at least as much as
+        it does, because the interval grows at least in proportion to R.
         """
         request = self._request
         c_spread = slots.rows.evaluate_shares(self._farad, self._c_spread, Join.PARALLEL)
         spread = spread_of(1.0, self._r_spread.min(), c_spread, request.timer.timing_error_limit)
-        short, long = slots.most / slots.wanted, slots.least / slots.wanted
+        lowest, highest = reach(self._tables, level.resistors)
+        short = np.minimum(slots.most, highest) / slots.wanted
+        long = np.maximum(slots.least, lowest) / slots.wanted
         outside = (short < 1 - request.within - SAME) | (long > 1 + request.within + SAME)
         if self._r_shift.any() or self._c_shift.any():
             miss: Floats = spread  # the mean may be nearer than the nominal interval
         else:
             miss = likely_miss(np.maximum(np.maximum(1 - short, long - 1), 0.0), spread)
-        return np.minimum(miss * PER_PART**parts, OUTSIDE / 2) * (1 - SAME) + OUTSIDE * outside
+        floor = np.minimum(miss * PER_PART**level.parts, OUTSIDE / 2) * (1 - SAME)
+        return np.where(long > short, inf, floor + OUTSIDE * outside)
 
     def score(self, near: Near, slots: CapacitorSlots, parts: int) -> Floats:
         """Return the scores of some circuits of so many parts."""
@@ -184,66 +194,101 @@ class _Weigher:
 
 @dataclass(frozen=True, slots=True)
 class _Front:
-    """The circuits that may get a place: level, row, score and the same with the handicap."""
+    """The circuits that may get a place, best score first, no two with the same values.
+
+    Attributes
+    ----------
+    level, row : where each is written. main : its main capacitor.
+    score, handicapped : its score, and the same with the handicap of its variations.
+    """
 
     level: Ints
     row: Ints
+    main: Ints
     score: Floats
     handicapped: Floats
 
+    @staticmethod
+    def none() -> _Front:
+        """Return a front of nothing."""
+        nothing = np.empty(0, dtype=np.int64)
+        return _Front(nothing, nothing, nothing, np.empty(0), np.empty(0))
 
-def _front(levels: list[Weighed], wanted: int) -> _Front:
-    """Gather the best scores of all levels, no two with the same parts, and handicap them."""
-    level = np.repeat(np.arange(len(levels)), [len(each.score) for each in levels])
-    row = np.concatenate([np.arange(len(each.score)) for each in levels])
-    score = np.concatenate([each.score for each in levels])
+    def last(self, wanted: int) -> float:
+        """Return the handicapped score of the last place; infinity while places are free."""
+        if len(self.score) < wanted:
+            return inf
+        return float(np.partition(self.handicapped, wanted - 1)[wanted - 1])
+
+    def places(self, wanted: int) -> Ints:
+        """Return the numbers of those that get a place, in rank order."""
+        return np.sort(np.argsort(self.handicapped, kind="stable")[:wanted])
+
+    def beside(self, main: NDArray[np.int32], score: Floats) -> Floats:
+        """Return the handicapped scores that further circuits would have beside the front."""
+        times = np.zeros(len(score), dtype=np.int64)
+        for capacitor in np.unique(self.main):
+            mine = np.flatnonzero(main == capacitor)
+            held = self.score[self.main == capacitor]
+            times[mine] = np.searchsorted(held, score[mine], "right")
+        return _handicapped(score, times)
+
+    def renumbered(self, rows: list[Ints]) -> _Front:
+        """Return the front after rows were dropped; `rows` gives the new numbers by level."""
+        row = self.row.copy()
+        for number, renumbering in enumerate(rows):
+            mine = self.level == number
+            row[mine] = renumbering[self.row[mine]]
+        return _Front(self.level, row, self.main, self.score, self.handicapped)
+
+
+def _front(weighed: list[Weighed], wanted: int) -> _Front:
+    """Gather the best scores of all levels, and handicap them."""
+    level = np.repeat(np.arange(len(weighed)), [len(each.score) for each in weighed])
+    row = np.concatenate([np.arange(len(each.score)) for each in weighed])
+    score = np.concatenate([each.score for each in weighed])
+    main = np.concatenate([each.slots.main[each.slot] for each in weighed])
     keep = 16 * wanted
     while True:
         best = np.argsort(score, kind="stable")[:keep]
-        best = best[_first_of_values(levels, level[best], row[best])]
-        handicap = _handicap(levels, level[best], row[best])
-        whole = np.floor(score[best] / OUTSIDE) * OUTSIDE
-        handicapped = (score[best] - whole) * handicap + whole
+        best = best[_first_of_values(weighed, level[best], row[best])]
+        handicapped = _handicapped(score[best], _times(main[best]))
         enough = len(best) >= wanted and np.sort(handicapped)[wanted - 1] <= score[best[-1]]
         if enough or keep >= len(score):
-            return _Front(level[best], row[best], score[best], handicapped)
+            last = np.sort(handicapped)[wanted - 1] if len(best) >= wanted else inf
+            best, handicapped = best[score[best] <= last], handicapped[score[best] <= last]
+            return _Front(level[best], row[best], main[best], score[best], handicapped)
         keep *= 4
 
 
-def _first_of_values(levels: list[Weighed], level: Ints, row: Ints) -> Ints:
+def _times(main: Ints) -> Ints:
+    """Count, for each circuit of a front, the better ones on the same main capacitor."""
+    order = np.argsort(main, kind="stable")
+    ranked = main[order]
+    times = np.empty(len(main), dtype=np.int64)
+    times[order] = np.arange(len(main)) - np.searchsorted(ranked, ranked, "left")
+    return times
+
+
+def _handicapped(score: Floats, times: Ints) -> Floats:
+    """Return scores as they count when so many better ones have the same main capacitor."""
+    with np.errstate(invalid="ignore"):
+        whole = np.where(np.isfinite(score), np.floor(score / OUTSIDE) * OUTSIDE, 0.0)
+    factor = PER_VARIATION ** np.minimum(times, MOST_VARIATIONS)
+    return np.asarray((score - whole) * factor + whole)
+
+
+def _first_of_values(weighed: list[Weighed], level: Ints, row: Ints) -> Ints:
     """Return the places of the first circuit of each set of part values.
 
     Other arrangements of the same parts, and equal values from other drawers, are no other answer.
     """
     values: dict[int, tuple[object, ...]] = {}
-    for number, weighed in enumerate(levels):
+    for number, each in enumerate(weighed):
         places = np.flatnonzero(level == number)
-        found = weighed.values_of(row[places])
+        found = each.values_of(row[places])
         values.update(zip(places.tolist(), found, strict=True))
     seen: dict[tuple[object, ...], int] = {}
     for place in range(len(level)):
         seen.setdefault(values[place], place)
     return np.array(list(seen.values()), dtype=np.int64)
-
-
-def _handicap(levels: list[Weighed], level: Ints, row: Ints) -> Floats:
-    """Return PER_VARIATION to the number of better fits on the same main capacitor."""
-    main = np.empty(len(level), dtype=np.int64)
-    for number, weighed in enumerate(levels):
-        places = np.flatnonzero(level == number)
-        main[places] = weighed.slots.main[weighed.slot[row[places]]]
-    order = np.argsort(main, kind="stable")
-    ranked = main[order]
-    times = np.empty(len(main), dtype=np.int64)
-    times[order] = np.arange(len(main)) - np.searchsorted(ranked, ranked, "left")
-    return np.asarray(PER_VARIATION ** np.minimum(times, MOST_VARIATIONS))
-
-
-def _places(levels: list[Weighed], wanted: int) -> list[tuple[Weighed, int]]:
-    """Give away the places and return them in rank order."""
-    if not any(len(each.score) for each in levels):
-        return []
-    front = _front(levels, wanted)
-    chosen = np.argsort(front.handicapped, kind="stable")[:wanted]
-    chosen = chosen[np.argsort(front.score[chosen], kind="stable")]
-    return [(levels[front.level[place]], int(front.row[place])) for place in chosen]

@@ -7,8 +7,11 @@ the capacitors (lower first), and at last the written form.
 
 from __future__ import annotations
 
+from bisect import bisect_left
+from collections import Counter
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
+from heapq import nsmallest
 from itertools import combinations_with_replacement, islice, permutations, product
 from typing import Any
 
@@ -16,9 +19,6 @@ from chooser.networks import Leaf, Network, canonical, members, replace, write_n
 from chooser.search.pools import PLENTY, Lot, Pool
 from chooser.search.ranking import Pairing, order_key
 from chooser.search.request import Request
-
-MOST_WAYS = 20_000
-"""Ways to take one pairing from the drawers that are weighed; far beyond any real drawer."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -63,7 +63,7 @@ class Drawers:
 
 def choices(
     pairings: Sequence[Pairing], resistors: Drawers, capacitors: Drawers, request: Request
-) -> tuple[list[Choice], bool]:
+) -> list[Choice]:
     """Decide the holdings of the shortlisted pairings and sort them all.
 
     Parameters
@@ -73,101 +73,132 @@ def choices(
 
     Returns
     -------
-    The choices in strict order, at least the first `request.top` of the whole space, and True;
-    or False beside them where a pairing had more than MOST_WAYS and the rest was not weighed.
+    The choices in strict order, at least the first `request.top` of the whole space.
     """
     key = order_key(request.rank)
-    complete = True
     found: list[tuple[tuple[Any, ...], Choice]] = []
     for pairing in pairings:
-        ways = product(
-            assignments(pairing.resistor, resistors, request.top),
-            assignments(pairing.capacitor, capacitors, request.top),
-        )
-        for ohms, farads in islice(ways, MOST_WAYS):
-            choice = Choice(pairing, ohms, farads)
-            found.append(((*key(pairing), *tie_break(choice, resistors, capacitors)), choice))
-        complete = complete and next(ways, None) is None
+        ways = ranked_ways(pairing, resistors, capacitors, request.top)
+        found += [
+            ((*key(pairing), *tie_break(choice, resistors, capacitors)), choice)
+            for choice in islice(ways, request.top)
+        ]
     found.sort(key=lambda pair: pair[0])
-    return [choice for _, choice in found], complete
+    return [choice for _, choice in found]
 
 
-def best_choice(
-    pairing: Pairing, resistors: Drawers, capacitors: Drawers, request: Request
-) -> Choice:
+def best_choice(pairing: Pairing, resistors: Drawers, capacitors: Drawers) -> Choice:
     """Decide the holdings of one pairing by the tie-breaks."""
-    return choices([pairing], resistors, capacitors, request)[0][0]
+    return next(ranked_ways(pairing, resistors, capacitors, 1))
 
 
 def tie_break(choice: Choice, resistors: Drawers, capacitors: Drawers) -> tuple[Any, ...]:
     """Return the part of the sort key that settles equal errors and parts."""
     ohms, farads = sorted(members(choice.resistor)), sorted(members(choice.capacitor))
-    plenty = min(
-        *(_times(resistors.uses[number], ohms.count(number)) for number in ohms),
-        *(_times(capacitors.uses[number], farads.count(number)) for number in farads),
-    )
+    plenty = min(_plenty(ohms, resistors), _plenty(farads, capacitors))
     return (-plenty, ohms, farads, _written(choice.resistor), _written(choice.capacitor))
 
 
-def _times(uses: int, pieces: int) -> int:
-    """Tell how many times so many pieces can be taken; of a plenty always as often."""
-    return uses if uses >= PLENTY else uses // pieces
+def ranked_ways(
+    pairing: Pairing, resistors: Drawers, capacitors: Drawers, top: int
+) -> Iterator[Choice]:
+    """Yield the ways to take one pairing from the drawers, best first, at least `top` if there are.
 
-
-def _written(network: Network[int]) -> str:
-    return write_network(network, str)
-
-
-def assignments(network: Network[int], drawers: Drawers, top: int) -> Iterator[Network[int]]:
-    """Yield the different ways to take a network of lots from holdings.
-
-    Of holdings that are equally many only the first few ids can be among the first `top`, so
-    that a lot of a hundred bags does not make a million ways.
-
-    Parameters
-    ----------
-    network : leaves are numbers of lots.
-    drawers : the holdings. top : how many ways the caller can use at most.
+    A hundred bags of one value make a million ways, so they are not listed and sorted: from the
+    greatest plenty downwards, only holdings that allow it are looked at, and of these only the
+    lowest ids, because a way through a higher id has enough better ones before it.
     """
+    yielded = 0
+    for plenty in _plenties(pairing, resistors, capacitors):
+        sides = (
+            _sides(pairing.resistor, resistors, plenty, 2 * top),
+            _sides(pairing.capacitor, capacitors, plenty, 2 * top),
+        )
+        for ohms, farads in product(*sides):
+            if min(ohms.plenty, farads.plenty) > plenty:
+                continue  # yielded before
+            ways = product(
+                _arranged(pairing.resistor, ohms, resistors),
+                _arranged(pairing.capacitor, farads, capacitors),
+            )
+            for resistor, capacitor in ways:
+                yield Choice(pairing, resistor, capacitor)
+                yielded += 1
+            if yielded >= top:
+                return
+
+
+@dataclass(frozen=True, slots=True)
+class _Side:
+    """The holdings that one network takes.
+
+    Attributes
+    ----------
+    ids : of all of them, rising. picks : by lot. plenty : how often they allow the network.
+    """
+
+    ids: tuple[int, ...]
+    picks: Mapping[int, tuple[int, ...]]
+    plenty: int
+
+
+def _plenties(pairing: Pairing, resistors: Drawers, capacitors: Drawers) -> list[int]:
+    """Return, falling, how often the scarcest holding of some way may allow the pairing."""
+    needs = [
+        (drawers.lots[lot].uses, pieces)
+        for network, drawers in ((pairing.resistor, resistors), (pairing.capacitor, capacitors))
+        for lot, pieces in Counter(members(network)).items()
+    ]
+    found = {_times(uses, k) for lot, pieces in needs for uses in lot for k in range(1, pieces + 1)}
+    rising = sorted(found - {0})
+
+    def too_much(plenty: int) -> bool:
+        return any(
+            sum(pieces if uses >= PLENTY else uses // plenty for uses in lot) < pieces
+            for lot, pieces in needs
+        )
+
+    return rising[: bisect_left(rising, x=True, key=too_much)][::-1]
+
+
+def _sides(network: Network[int], drawers: Drawers, plenty: int, count: int) -> list[_Side]:
+    """Return the first sides, by ids, whose every holding allows the network `plenty` times."""
     leaves = list(members(network))
     different = sorted(set(leaves))
-    if all(len(drawers.lots[lot].holdings) == 1 for lot in different):
-        yield _settled(
-            replace(network, lambda lot: drawers.lots[lot].holdings[0].id), drawers.value
-        )
-        return
-    ways = [_ways(drawers.lots[lot], leaves.count(lot), top) for lot in different]
-    seen: set[Network[int]] = set()
-    for picked in product(*ways):
-        for arranged in _arranged(network, dict(zip(different, picked, strict=True)), drawers):
-            if arranged not in seen:
-                seen.add(arranged)
-                yield arranged
-
-
-def _ways(lot: Lot, pieces: int, top: int) -> list[tuple[int, ...]]:
-    """List the multisets of `pieces` holdings of a lot that the counts allow, as rising ids."""
-    alike: dict[int, int] = {}
-    uses_of: dict[int, int] = {}
-    for holding, uses in zip(lot.holdings, lot.uses, strict=True):
-        alike[uses] = alike.get(uses, 0) + 1
-        if alike[uses] <= top + pieces:
-            uses_of[holding.id] = min(uses, PLENTY)
+    by_lot = [_picks(drawers.lots[lot], leaves.count(lot), plenty, count) for lot in different]
+    joined = (
+        (tuple(sorted(number for pick in picks for number in pick)), picks)
+        for picks in product(*by_lot)
+    )
     return [
-        picked
-        for picked in combinations_with_replacement(uses_of, pieces)
-        if all(picked.count(number) <= uses_of[number] for number in set(picked))
+        _Side(ids, dict(zip(different, picks, strict=True)), _plenty(ids, drawers))
+        for ids, picks in nsmallest(count, joined)
     ]
 
 
-def _arranged(
-    network: Network[int], picked: Mapping[int, tuple[int, ...]], drawers: Drawers
-) -> Iterator[Network[int]]:
-    """Yield the different ways to put picked holdings on the leaves of their lots."""
-    orders = [sorted(set(permutations(numbers))) for numbers in picked.values()]
+def _picks(lot: Lot, pieces: int, plenty: int, count: int) -> list[tuple[int, ...]]:
+    """List the multisets of `pieces` holdings of a lot, of the lowest ids that can matter."""
+    uses = {
+        holding.id: most
+        for holding, most in zip(lot.holdings, lot.uses, strict=True)
+        if most >= plenty
+    }
+    return [
+        pick
+        for pick in combinations_with_replacement(list(uses)[: count + pieces], pieces)
+        if all(_times(uses[number], pick.count(number)) >= plenty for number in set(pick))
+    ]
+
+
+def _arranged(network: Network[int], side: _Side, drawers: Drawers) -> list[Network[int]]:
+    """Return the different ways to put picked holdings on the leaves of their lots, as written."""
+    orders = [sorted(set(permutations(numbers))) for numbers in side.picks.values()]
+    found: dict[str, Network[int]] = {}
     for arrangement in product(*orders):
-        supply = {lot: iter(row) for lot, row in zip(picked, arrangement, strict=True)}
-        yield _settled(_filled(network, supply), drawers.value)
+        supply = {lot: iter(row) for lot, row in zip(side.picks, arrangement, strict=True)}
+        settled = _settled(_filled(network, supply), drawers.value)
+        found.setdefault(_written(settled), settled)
+    return [found[text] for text in sorted(found)]
 
 
 def _filled(network: Network[int], supply: Mapping[int, Iterator[int]]) -> Network[int]:
@@ -179,3 +210,16 @@ def _settled(network: Network[int], value: Mapping[int, float]) -> Network[int]:
     if isinstance(network, Leaf):
         return network
     return canonical(network, lambda number: (value[number], number))
+
+
+def _plenty(ids: Sequence[int], drawers: Drawers) -> int:
+    return min(_times(drawers.uses[number], ids.count(number)) for number in set(ids))
+
+
+def _times(uses: int, pieces: int) -> int:
+    """Tell how many times so many pieces can be taken; of a plenty always as often."""
+    return PLENTY if uses >= PLENTY else uses // pieces
+
+
+def _written(network: Network[int]) -> str:
+    return write_network(network, str)

@@ -83,7 +83,6 @@ def search_choices(usable: Usable, request: Request) -> tuple[list[Choice], str]
     drawers = Drawers.of(space.resistors), Drawers.of(space.capacitors)
     if request.rank is Rank.BALANCED:
         pairings = BalancedSearch(space, judge).pairings()
-        return [best_choice(pairing, *drawers, request) for pairing in pairings], space.limit
-    found, complete = choices(ExactSearch(space, judge).pairings(), *drawers, request)
-    limit = "" if complete else "not every way to take equal parts from drawers was weighed"
-    return found[: request.top], space.limit or limit
+        return [best_choice(pairing, *drawers) for pairing in pairings], space.limit
+    found = choices(ExactSearch(space, judge).pairings(), *drawers, request)
+    return found[: request.top], space.limit

@@ -8,7 +8,7 @@ import numpy as np
 
 from chooser.search.pools import Floats, Ints
 from chooser.search.tables import Rows, Tables, every_network
-from chooser.search.windows import find_in_windows
+from chooser.search.windows import ROUNDING, find_in_windows
 
 WISHES_AT_ONCE = 2048
 """Wishes worked on together where a size is not listed: bounds the memory."""
@@ -55,14 +55,25 @@ def nearest(tables: Tables, size: int, wish: Wish, count: int) -> Near:
     Up to `count` for each wish; fewer where no more lie within its limits.
     """
     # A wish outside its limits is nearest to whatever is nearest to the limit.
-    inside = Wish(np.clip(wish.wanted, wish.least, wish.most), wish.least, wish.most)
+    smallest, largest = reach(tables, size)
+    least, most = np.maximum(wish.least, smallest), np.minimum(wish.most, largest)
+    open_ = np.flatnonzero(least <= most)
+    least, most = least[open_], most[open_]
+    inside = Wish(np.clip(wish.wanted[open_], least, most), least, most)
     if tables.listed(size):
         near = _from_tables(every_network(tables, size), inside.wanted, count)
     else:
         near = _from_windows(tables, size, inside, count)
     value, owner = near.rows.value, near.owner
-    kept = np.flatnonzero((value >= wish.least[owner]) & (value <= wish.most[owner]))
-    return _cut(Near(owner[kept], near.rows.take(kept)), wish.wanted, count)
+    kept = np.flatnonzero((value >= least[owner]) & (value <= most[owner]))
+    return _cut(Near(open_[owner[kept]], near.rows.take(kept)), wish.wanted, count)
+
+
+def reach(tables: Tables, size: int) -> tuple[float, float]:
+    """Return values that no network of so many parts is below and above, in ohm."""
+    value = tables.singles.value
+    rounding = 1 + ROUNDING
+    return float(value[0]) / size / rounding, float(value[-1]) * size * rounding
 
 
 def _from_tables(listed: list[Rows], wanted: Floats, count: int) -> Near:
@@ -80,18 +91,17 @@ def _from_tables(listed: list[Rows], wanted: Floats, count: int) -> Near:
 
 def _from_windows(tables: Tables, size: int, wish: Wish, count: int) -> Near:
     """Widen each wish's window until enough lie in it, or it is as wide as the limits."""
-    smallest, largest = tables.singles.value[0] / size, tables.singles.value[-1] * size
-    least, most = np.maximum(wish.least, smallest), np.minimum(wish.most, largest)
-    wanted = wish.wanted
+    smallest, largest = reach(tables, size)
+    wanted, least, most = wish.wanted, wish.least, wish.most
     owners: list[Ints] = [np.empty(0, dtype=np.int64)]
     pieces: list[Rows] = [Rows.none(size)]
     # A quarter of the width that would do if the networks were spread evenly over the octaves.
     first = count * float(np.log(largest / smallest)) / tables.count(size) / 4
     for start in range(0, len(wanted), WISHES_AT_ONCE):
-        open_ = start + np.flatnonzero((least <= most)[start : start + WISHES_AT_ONCE])
+        open_ = np.arange(start, min(start + WISHES_AT_ONCE, len(wanted)))
         width = first
         while len(open_):
-            low = np.maximum(wanted[open_] / (1 + width), least[open_])
+            low = np.maximum(wanted[open_] * (1 - width), least[open_])
             high = np.minimum(wanted[open_] * (1 + width), most[open_])
             found = list(find_in_windows(tables, size, low, high))
             held = np.zeros(len(open_), dtype=np.int64)

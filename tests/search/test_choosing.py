@@ -10,8 +10,7 @@ import pytest
 from stocks import EVERY_RULE, asked, capacitor, ids, plain, resistor, sides
 
 from chooser.networks import Group, Join, Leaf
-from chooser.search import choosing
-from chooser.search.choosing import Drawers, assignments, best_choice, choices, tie_break
+from chooser.search.choosing import Drawers, best_choice, ranked_ways, tie_break
 from chooser.search.find import find_fits
 from chooser.search.pools import gather
 from chooser.search.ranking import Pairing
@@ -101,58 +100,55 @@ def test_many_equal_drawers_against_the_oracle(seed, rank):
     assert found == [(row[4], row[5]) for row in expected]
 
 
+def ways(network, held, top):
+    """The ways to fill a resistor network beside one plentiful capacitor, as plain networks."""
+    caps = drawers([capacitor(11, 1e-6, None)])
+    pairing = Pairing(network, Leaf(0), 3, 0.0, 0)
+    return [choice.resistor for choice in ranked_ways(pairing, drawers(held), caps, top)]
+
+
 def test_every_way_to_fill_a_network_once():
     """Two pieces of a lot of three drawers in series: three doubles and three mixed, by hand."""
     held = [resistor(number, 5e3, 2) for number in (1, 2, 3)]
-    found = [oracle.parts_of(plain(each)) for each in assignments(series(0, 0), drawers(held), 99)]
-    assert sorted(found) == [[1, 1], [1, 2], [1, 3], [2, 2], [2, 3], [3, 3]]
+    found = [oracle.parts_of(plain(each)) for each in ways(series(0, 0), held, 99)]
+    assert found == [[1, 2], [1, 3], [2, 3], [1, 1], [2, 2], [3, 3]]
 
 
 def test_places_in_the_network_matter():
     """In a + (a || a) it matters which drawer stands alone: 3 x 6 ways less those too scarce."""
     held = [resistor(1, 5e3, 2), resistor(2, 5e3, 1)]
     network = Group(Join.SERIES, (Leaf(0), Group(Join.PARALLEL, (Leaf(0), Leaf(0)))))
-    found = {plain(each) for each in assignments(network, drawers(held), 99)}
+    found = {plain(each) for each in ways(network, held, 99)}
     # By hand: the multiset is 1, 1, 2; the single one is either the 1 or the 2.
     assert found == {("+", (("||", (1, 2)), 1)), ("+", (("||", (1, 1)), 2))}
 
 
-def test_a_hundred_bags_do_not_make_a_million_ways():
-    held = [resistor(number, 5e3, 1) for number in range(1, 101)]
-    found = list(assignments(series(0, 0, 0), drawers(held), 10))
-    assert len(found) < 1000
-    best = sorted(oracle.parts_of(plain(each)) for each in found)[:10]
-    assert best[:3] == [[1, 2, 3], [1, 2, 4], [1, 2, 5]]
-    assert best == [[1, 2, last] for last in range(3, 13)]
+@pytest.mark.parametrize("bags", [100, 1000])
+def test_a_hundred_bags_do_not_make_a_million_ways(bags):
+    held = [resistor(number, 5e3, 1) for number in range(1, bags + 1)]
+    found = [oracle.parts_of(plain(each)) for each in ways(series(0, 0, 0), held, 10)]
+    assert found == [[1, 2, last] for last in range(3, 13)]
 
 
-def pairing(resistor_network):
-    return Pairing(resistor_network, Leaf(0), 3, 0.0, 0)
-
-
-def test_too_many_ways_are_said(monkeypatch):
-    held = [resistor(number, 5e3, number) for number in range(1, 6)]
-    caps = [capacitor(11, 1e-6, 9)]
-    request = asked(ONE, rank=Rank.ERROR, top=3)
-    given = [pairing(series(0, 0))], drawers(held), drawers(caps), request
-    found, complete = choices(*given)
-    # Five drawers: ten mixed pairs and four doubles (the first holds one piece).
-    assert (len(found), complete) == (14, True)
-    monkeypatch.setattr(choosing, "MOST_WAYS", 13)
-    assert choices(*given)[1] is False
-    monkeypatch.setattr(choosing, "MOST_WAYS", 14)
-    assert choices(*given)[1] is True
-    monkeypatch.setattr(choosing, "MOST_WAYS", 5)
-    holdings = [*held, *caps]
-    answer = find_fits(holdings, asked(ONE, rank=Rank.ERROR, top=3, lifted=EVERY_RULE))
-    assert not answer.searched.complete
-    assert answer.searched.limit
+@pytest.mark.parametrize("top", [1, 3, 10, 40])
+@pytest.mark.parametrize("seed", range(6))
+def test_the_first_ways_are_the_first_of_all_ways(seed, top):
+    """Eight drawers with counts of their own: against listing everything and sorting it."""
+    rnd = random.Random(seed)
+    held = [resistor(number, 5e3, rnd.choice((1, 2, 3, 5, 9, None))) for number in range(1, 9)]
+    pool, caps = drawers(held), drawers([capacitor(11, 1e-6, rnd.choice((1, 2, 7, None)))])
+    given = Pairing(series(0, 0, 0), Leaf(0), 4, 0.0, 0)
+    everything = sorted(
+        ranked_ways(given, pool, caps, 10**6), key=lambda choice: tie_break(choice, pool, caps)
+    )
+    assert len(set(everything)) == len(everything) > 60
+    assert list(ranked_ways(given, pool, caps, top))[:top] == everything[:top]
 
 
 def test_the_best_choice_is_the_first():
     held = [resistor(1, 5e3, 2), resistor(2, 5e3, 7), resistor(3, 5e3, 7)]
     caps = [capacitor(11, 1e-6, 9)]
     given = drawers(held), drawers(caps)
-    best = best_choice(pairing(series(0, 0)), *given, asked(ONE))
+    best = best_choice(Pairing(series(0, 0), Leaf(0), 3, 0.0, 0), *given)
     assert oracle.parts_of(plain(best.resistor)) == [2, 3]
     assert tie_break(best, *given)[:3] == (-7, [2, 3], [11])
