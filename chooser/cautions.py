@@ -8,10 +8,11 @@ is worth knowing. Every sentence says what to do.
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from enum import StrEnum
 from math import isfinite
 
+from chooser.circuits.leakage import taken_for
 from chooser.circuits.monostable import Drive, interval, latest, trip_ratio, typical
 from chooser.circuits.timers import Timer
 from chooser.interval import Outlook, SlotFacts
@@ -23,7 +24,7 @@ from chooser.quantities import (
     format_resistance,
     format_voltage,
 )
-from chooser.technologies import technology_of, tolerance_of
+from chooser.technologies import is_polarised, technology_of, tolerance_of
 
 LEAK_STRETCH = 0.02
 """Lengthening by leakage at its limit from which it is worth a word: the usual band."""
@@ -45,6 +46,9 @@ BIG_CHARGE = 0.01
 
 COARSE = 0.05
 """Tolerance of a capacitor from which its errors hide everything else."""
+
+SMALL_CURRENT = 10e-9
+"""Threshold current (ampere) above which a timer is a bipolar one: CMOS inputs take picoamperes."""
 
 NOISE = 1e-6
 """Errors below a part per million are not told apart."""
@@ -134,7 +138,7 @@ def needed_rating(holding: Holding, supply: float) -> float:
     Twice the supply for tantalum, 1.5 times for other electrolytics, the supply itself for
     the rest (common practice, from memory).
     """
-    technology = holding.part.technology or ""
+    technology = taken_for(holding.part)
     if technology == "tantalum":
         return 2.0 * supply
     return 1.5 * supply if technology.startswith("electrolytic") else supply
@@ -211,10 +215,7 @@ def _may_never_end(facts: FitFacts) -> str | None:
             "or use an oscillator with a counter"
         )
     else:
-        way = (
-            "take a smaller resistor with a larger capacitor, a CMOS timer, "
-            "or an oscillator with a counter"
-        )
+        way = f"{_way_out(facts)}, or an oscillator with a counter"
     return f"{state} this interval {ends}; {way}."
 
 
@@ -222,21 +223,37 @@ def _leakage(facts: FitFacts) -> str | None:
     nominal = facts.outlook.nominal
     if facts.timer.ideal or not isfinite(nominal) or nominal == 0.0:
         return None
-    drive = facts.latest
-    longest = interval(facts.r.value, facts.c.value, facts.c.leak_limit, drive)
-    stretch = float(longest) / nominal - 1.0
-    if stretch < LEAK_STRETCH or not isfinite(stretch):  # for ever is said by another rule
+    lossless = float(interval(facts.r.value, facts.c.value, 0.0, _without_currents(facts.typical)))
+    longest = float(interval(facts.r.value, facts.c.value, facts.c.leak_limit, facts.latest))
+    usual, most = nominal / lossless - 1.0, longest / lossless - 1.0
+    if most < LEAK_STRETCH or not isfinite(most):  # for ever is said by another rule
         return None
-    ratio = trip_ratio(facts.r.value, facts.c.leak_limit, drive)
-    if _capacitor_leaks_most(facts):
-        leak, way = "may leak", "measure the capacitor's leakage or take a better capacitor"
-    else:
-        leak = f"the {facts.timer.name} timer may take"
-        way = "take a smaller resistor with a larger capacitor, or a CMOS timer"
+    ratio = trip_ratio(facts.r.value, facts.c.leak_limit, facts.latest)
+    way = "through the capacitor"
+    if not _capacitor_leaks_most(facts):
+        way = f"to the {facts.timer.name} timer itself"
+    span = format_percent(usual, digits=2)
+    if most - usual >= LEAK_STRETCH / 2:
+        span += f", at the limit by {format_percent(most, digits=2)}"
     return (
-        f"At the trip point the charging current is only {ratio:.2g} times what {leak}, so the "
-        f"interval may run {format_percent(stretch, digits=2)} longer; {way}."
+        f"At the trip point the charging current may be only {ratio:.2g} times what is lost, "
+        f"mostly {way}; that lengthens the interval by {span}: {_way_out(facts)}."
     )
+
+
+def _without_currents(drive: Drive) -> Drive:
+    return replace(drive, leak_current=0.0)
+
+
+def _way_out(facts: FitFacts) -> str:
+    if not _capacitor_leaks_most(facts):
+        hungry = facts.timer.threshold_current_limit > SMALL_CURRENT
+        return "take a smaller resistor with a larger capacitor" + (
+            ", or a CMOS timer" if hungry else ""
+        )
+    if all(holding.part.leakage is not None for holding in facts.capacitors):
+        return "it is a measured figure, so count on it and time the settled circuit"
+    return "measure the leakage, or take a film or low-leakage capacitor"
 
 
 def _capacitor_tolerance(facts: FitFacts) -> str | None:
@@ -364,11 +381,7 @@ def _capacitor_leaks_most(facts: FitFacts) -> bool:
 
 def _polarised(facts: FitFacts) -> list[Holding]:
     """Return the picked capacitors that reverse voltage destroys."""
-    return [
-        holding
-        for holding in facts.capacitors
-        if (technology := technology_of(holding.part)) is not None and technology.polarised
-    ]
+    return [holding for holding in facts.capacitors if is_polarised(holding.part)]
 
 
 def _names(holdings: list[Holding]) -> str:

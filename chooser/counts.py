@@ -15,7 +15,7 @@ from chooser.decimals import NUMBER, clean, doubtful, plain, read_number
 from chooser.errors import UnreadableValueError
 from chooser.parts import Count, Sureness
 
-_MOST_PIECES = 1_000_000_000
+_MOST_PIECES = 1_000_000
 _EXAMPLE = "20, ~50 or plenty"
 _ROUGH = re.compile(
     r"(?:~|\N{ALMOST EQUAL TO}|about|approx\.?|ca\.?|circa|roughly) ?", re.IGNORECASE
@@ -118,7 +118,8 @@ def _whole(text: str, typed: str, lead: str = "") -> int:
     if value < 0:
         raise UnreadableValueError(text, "is below zero", f"write the pieces you have: {_EXAMPLE}")
     if value > _MOST_PIECES:
-        raise UnreadableValueError(text, "is no believable count", f"write it like {_EXAMPLE}")
+        advice = f"write at most {_MOST_PIECES}, or plenty"
+        raise UnreadableValueError(text, "is no believable count", advice)
     if value != int(value):
         raise UnreadableValueError(text, "is not a whole number", f"write it like {_EXAMPLE}")
     return int(value)

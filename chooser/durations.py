@@ -116,6 +116,11 @@ def _unit(text: str, pieces: list[tuple[str, str]], place: int) -> Fraction:
         if _UNITS.get(before) == _UNITS["h"] or _UNITS.get(after) == _UNITS["s"]:
             return _UNITS["min"]
         raise doubtful(text, [f"{number}min", f"{number}ms"], parse_duration)
+    if name.startswith("M") and _UNITS.get(name.lower()) == _UNITS["ms"]:
+        # A large M is mega; nobody means that, but who wrote it may not have meant milli either.
+        raise doubtful(
+            text, [f"{number}ms", f"{number}min"], parse_duration, "has a capital M, which is mega"
+        )
     if name.lower() in _UNITS:
         return _UNITS[name.lower()]
     raise _unreadable(text, " ".join("".join(piece) for piece in pieces))

@@ -133,6 +133,8 @@ def _digit_code(text: str, code: re.Match[str]) -> MarkingReading | None:
         readings = [f"{code['figures']}p", f"{code['figures']}0p"]
         raise AmbiguousValueError(text, readings, "ends in 0, which makers use in two ways")
     value = Number(code["figures"]).scaled(_SHRINKING.get(zeros, int(zeros or 0)) - 12)
+    if letter == "k" and not zeros:
+        raise _perhaps_a_resistor(text, code["figures"])
     as_unit = _unit_readings(code["figures"] + zeros, letter)
     # A code with M is so common, and 104 mega- or millifarad so absurd, that M is not in doubt.
     if as_unit and not (letter == "M" and zeros):
@@ -144,6 +146,15 @@ def _digit_code(text: str, code: re.Match[str]) -> MarkingReading | None:
         else "two figures in pF"
     )
     return _with_letter(text, value, letter.upper(), rule)
+
+
+def _perhaps_a_resistor(text: str, figures: str) -> AmbiguousValueError:
+    """Refuse ``10k``: hardly anyone types the marking 10K so, and everyone a resistor."""
+    return AmbiguousValueError(
+        text,
+        [f"{figures}K", f"{figures}p"],
+        f"may be the marking {figures}K ({figures}p with 10 %), or a resistor was meant",
+    )
 
 
 def _is_tolerance_letter(letter: str) -> bool:

@@ -12,7 +12,7 @@ SI base units out. A text with two readings is refused with both of them.
 from __future__ import annotations
 
 import re
-from collections.abc import Callable, Iterator, Mapping
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 from math import isfinite
 
@@ -44,6 +44,7 @@ class Grammar:
     doubtful : prefixes and letters with several readings -> their powers of ten.
     bare : power of ten of a bare number, or None where it is refused.
     bare_readings : what may have been left out behind a bare number.
+    usual : ends of what a bare number may have meant, in the base unit.
     least, most : ends of what is believable, in the base unit.
     """
 
@@ -59,6 +60,7 @@ class Grammar:
     doubtful: Mapping[str, tuple[int, ...]] = field(default_factory=dict)
     bare: int | None = 0
     bare_readings: tuple[str, ...] = ()
+    usual: tuple[float, float] = (0.0, float("inf"))
 
 
 def read(text: str, grammar: Grammar) -> float:
@@ -136,9 +138,29 @@ def _number_and_suffix(
     if suffix:
         return numbers, _powers_of(suffix, grammar)
     if grammar.bare is None and any(number.scaled(0) for number in numbers):
-        readings = [f"{number}{unit}" for number in numbers for unit in grammar.bare_readings]
+        readings = _bare_readings(numbers, grammar)
         raise doubtful(text, readings, lambda reading: read(reading, grammar), "has no unit")
     return numbers, (grammar.bare or 0,)
+
+
+_SMALL = 1e-3
+"""A bare number below this may be in the base unit, as calculators and spreadsheets give it."""
+
+
+def _bare_readings(numbers: Sequence[Number], grammar: Grammar) -> list[str]:
+    """List what a bare number may have meant, the absurd left out where anything else remains."""
+    low, high = grammar.usual
+    every, usual = [], []
+    for number in numbers:
+        small = abs(number.scaled(0)) < _SMALL
+        for unit in (*grammar.bare_readings, *([""] if small else [])):
+            (power,) = _powers_of(unit, grammar) if unit else (0,)
+            value = number.scaled(power)
+            # 0.0000001u says nothing to anybody, 0p1 does.
+            written = grammar.write(value) if small or number.exponent else f"{number}{unit}"
+            every.append(written)
+            usual += [written] if low <= value <= high else []
+    return usual or every
 
 
 def _powers_of(suffix: str, grammar: Grammar) -> tuple[int, ...]:

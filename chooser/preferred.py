@@ -121,29 +121,6 @@ def nearest(name: str, value: float) -> float:
     return below if nearer_below else above
 
 
-def is_preferred(name: str, value: float) -> bool:
-    """Tell whether a value belongs to a series.
-
-    Parameters
-    ----------
-    name : of the series. value : any unit; compared up to rounding noise (1e-12).
-
-    Returns
-    -------
-    True where it does; dimensionless.
-
-    Raises
-    ------
-    UnknownNameError
-        For an unknown series.
-    """
-    series(name)
-    if not isfinite(value) or value <= 0:
-        return False
-    return abs(nearest(name, value) / value - 1) < _ROUNDING_NOISE
-
-
-_ROUNDING_NOISE = 1e-12
 _KIT = re.compile(r"(?P<series>E[0-9]+)[,: ]+(?P<range>.+)", re.IGNORECASE)
 
 

@@ -30,7 +30,6 @@ from chooser.ranges import (
     Span,
     is_range,
     parse_capacitance_range,
-    parse_duration_range,
     parse_resistance_range,
 )
 from chooser.tolerances import format_percent, format_tolerance, parse_percent, parse_tolerance
@@ -65,7 +64,6 @@ __all__ = [
     "parse_count",
     "parse_current",
     "parse_duration",
-    "parse_duration_range",
     "parse_pack",
     "parse_percent",
     "parse_power",

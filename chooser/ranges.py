@@ -1,9 +1,9 @@
-"""Ranges of values: ``5s..60s``, ``5..60s``, ``10..1M``, ``1n..1u``.
+"""Ranges of values: ``10..1M``, ``1n..1u``.
 
 Conventions
 -----------
-Both ends belong to the range, and the low end stands first. A duration without a unit at the
-low end takes the unit of the high end; a resistance without one is ohm, as everywhere.
+Both ends belong to the range, and the low end stands first. A resistance without a unit is
+ohm, as everywhere.
 """
 
 from __future__ import annotations
@@ -12,16 +12,14 @@ import re
 from collections.abc import Callable
 from dataclasses import dataclass
 
-from chooser.decimals import NUMBER, clean
-from chooser.durations import parse_duration
+from chooser.decimals import clean
 from chooser.errors import AmbiguousValueError, UnreadableValueError
-from chooser.notation import is_bare, read
+from chooser.notation import read
 from chooser.units import CAPACITANCE, RESISTANCE
 
 _DIVIDER = re.compile(
     r" ?(?<!\.)\.\.(?!\.) ?| ?… ?| to |(?<=[0-9A-Za-z])(?<![0-9][eE]) ?-(?= ?[0-9])", re.IGNORECASE
 )
-_ONE_UNIT = re.compile(rf"{NUMBER} ?(?P<unit>[A-Za-z]+)")
 
 
 @dataclass(frozen=True, slots=True)
@@ -35,38 +33,6 @@ class Span:
 
     low: float
     high: float
-
-
-def parse_duration_range(text: str) -> Span:
-    """Read a range of durations: ``5s..60s``, ``5..60s``, ``1:30..5:00``.
-
-    Parameters
-    ----------
-    text : any text.
-
-    Returns
-    -------
-    Span
-        In seconds.
-
-    Raises
-    ------
-    AmbiguousValueError
-        Where an end has several readings.
-    UnreadableValueError
-        Where it is no range, or runs backwards.
-
-    See Also
-    --------
-    parse_duration
-    """
-    low, high = _ends(text, "a range of durations", "5s..60s")
-    unit = _ONE_UNIT.fullmatch(high)
-    if is_bare(low) and unit:
-        low += unit["unit"]
-    elif is_bare(high) and not is_bare(low):
-        raise _unit_missing(text, low, high)
-    return _span(text, low, high, parse_duration)
 
 
 def parse_resistance_range(text: str) -> Span:
@@ -138,13 +104,6 @@ def _ends(text: str, what: str, example: str) -> tuple[str, str]:
     if len(ends) != 2 or not all(ends):  # noqa: PLR2004 - two ends
         raise UnreadableValueError(text, f"is not {what}", f"write low..high such as {example}")
     return ends[0], ends[1]
-
-
-def _unit_missing(text: str, low: str, high: str) -> UnreadableValueError:
-    """Refuse ``5s..60``: the high end might have any unit."""
-    unit = _ONE_UNIT.fullmatch(low)
-    advice = f"write {low}..{high}{unit['unit']}" if unit else "write a unit behind both ends"
-    return UnreadableValueError(text, "has no unit at its high end", f"{advice} if that was meant")
 
 
 def _span(text: str, low: str, high: str, parse: Callable[[str], float]) -> Span:

@@ -206,6 +206,22 @@ def technology_of(part: Part) -> Technology | None:
     return None if part.technology is None else _BY_NAME.get(part.technology)
 
 
+LARGE_FARAD = 1e-6
+"""Farad from which a capacitor of unknown technology is taken for an electrolytic.
+
+Common practice, no source: loose parts of 1 uF and more are mostly electrolytics, and assuming
+the leakier kind, and the one that has a plus, is the side that hurts nobody.
+"""
+
+
+def is_polarised(part: Part) -> bool:
+    """Tell whether reverse voltage destroys a capacitor; a large unknown one is taken for such."""
+    technology = technology_of(part)
+    if technology is not None:
+        return technology.polarised
+    return part.kind is Kind.CAPACITOR and part.effective >= LARGE_FARAD
+
+
 def tolerance_of(part: Part) -> tuple[Tolerance, bool]:
     """Give the tolerance to calculate with, and whether it is only assumed.
 

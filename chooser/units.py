@@ -166,6 +166,7 @@ CAPACITANCE = Grammar(
     doubtful={"m": (-6, -3), "M": (-6, -3)},
     bare=None,
     bare_readings=("p", "n", "u"),
+    usual=(0.5e-12, 1.0),
     least=1e-15,
     most=10.0,
 )
@@ -213,6 +214,7 @@ CURRENT = Grammar(
     words=("amperes", "ampere", "amps", "amp", "a", ""),
     bare=None,
     bare_readings=("nA", "uA", "mA"),
+    usual=(1e-11, 0.1),
     least=1e-15,
     most=1e3,
 )

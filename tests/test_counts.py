@@ -77,7 +77,14 @@ def test_what_is_no_count_is_refused_with_what_to_do(text, words):
     assert caught.value.advice
 
 
-@given(st.integers(0, 10**9), st.sampled_from([Sureness.EXACT, Sureness.ROUGH]))
+def test_a_million_is_the_most_anybody_counts():
+    assert parse_count("1000000") == Count(1_000_000)
+    for text in ("1000001", "~1e9", "1e9"):
+        with pytest.raises(UnreadableValueError, match="write at most 1000000, or plenty"):
+            parse_count(text)
+
+
+@given(st.integers(0, 10**6), st.sampled_from([Sureness.EXACT, Sureness.ROUGH]))
 def test_a_written_count_is_read_as_the_same(number, sureness):
     assert parse_count(format_count(Count(number, sureness))) == Count(number, sureness)
     assert parse_count(format_count(Count(0, Sureness.PLENTY))) == Count(0, Sureness.PLENTY)

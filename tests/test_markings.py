@@ -73,6 +73,14 @@ def test_a_marking_is_read(text, value, tolerance):
         ("104H", ("100n with 3%", "100n with 2.5%")),
         ("1m", ("1u", "1000u")),
         ("047", ("047p", "047n", "047u")),
+        # Large, K is the tolerance letter; small, everybody else means kilohm.
+        ("10k", ("10K", "10p")),
+        ("47 k", ("47K", "47p")),
+        # From a number cell of a spreadsheet; no capacitor has 0.1 aF (common practice, no source).
+        ("0.0000001", ("100n",)),
+        ("1e-7", ("100n",)),
+        ("0.00001", ("10p", "10u")),
+        ("0.1", ("0.1n", "0.1u")),
     ],
 )
 def test_a_doubtful_marking_is_refused_with_its_readings(text, readings):

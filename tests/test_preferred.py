@@ -18,7 +18,6 @@ from chooser.parts import Kind
 from chooser.preferred import (
     SERIES_NAMES,
     is_kit,
-    is_preferred,
     nearest,
     parse_kit,
     series,
@@ -131,22 +130,12 @@ def test_nothing_in_the_series_is_nearer_than_the_nearest(name, value):
 def test_nothing_is_nearest_to_what_no_part_has(value):
     with pytest.raises(BadRequestError):
         nearest("E12", value)
-    assert not is_preferred("E12", value)
-
-
-def test_membership_forgives_rounding_noise_and_nothing_else():
-    assert is_preferred("E12", 4700)
-    assert is_preferred("E12", 47 * 1e-10)  # not the float 4.7e-9
-    assert not is_preferred("E12", 4701)
-    assert not is_preferred("E12", 5100)
-    assert is_preferred("E24", 5100)
 
 
 @pytest.mark.parametrize("name", ["E24", "E96"])
 def test_every_value_of_every_decade_is_written_and_read_back(name):
     for ohm in values_between(name, 0.1, 10e6):
         assert parse_resistance(format_resistance(ohm)) == ohm
-        assert is_preferred(name, ohm)
         assert nearest(name, ohm) == ohm
 
 

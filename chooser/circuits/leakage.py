@@ -11,6 +11,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 from chooser.parts import Part
+from chooser.technologies import LARGE_FARAD
 
 
 @dataclass(frozen=True, slots=True)
@@ -92,13 +93,6 @@ A maker's answer puts settled leakage one to two decades below the limit; this i
 geometric mean of 10 and 100, an assumption and no more. A measured leakage replaces it.
 """
 
-LARGE = 1e-6
-"""Farad from which a capacitor of unknown technology is taken for an electrolytic.
-
-Below it the poorest ceramic is assumed. Common practice, no source: loose parts of 1 uF and
-more are mostly electrolytics, and assuming the leakier kind keeps the interval honest.
-"""
-
 
 def leak_conductance(part: Part, supply: float | None = None) -> LeakConductance:
     """Return what a capacitor leaks, from its own figure or else from its technology.
@@ -119,14 +113,19 @@ def leak_conductance(part: Part, supply: float | None = None) -> LeakConductance
         own = part.leakage / voltage
         return LeakConductance(own, own)
     farad = part.effective
-    technology = part.technology
-    if technology not in INSULATION and technology not in CURRENT_LIMITS:
-        technology = "electrolytic" if farad >= LARGE else "ceramic"
+    technology = taken_for(part)
     if technology in INSULATION:
         insulation = INSULATION[technology]
         return LeakConductance(farad / insulation.cool, farad / insulation.hot)
     limit = _limit(CURRENT_LIMITS[technology], farad, part.voltage)
     return LeakConductance(limit / SETTLED, limit)
+
+
+def taken_for(part: Part) -> str:
+    """Return the technology that a capacitor leaks like: its own, else by its size."""
+    if part.technology in INSULATION or part.technology in CURRENT_LIMITS:
+        return part.technology
+    return "electrolytic" if part.effective >= LARGE_FARAD else "ceramic"
 
 
 def _limit(row: CurrentLimit, farad: float, voltage: float | None) -> float:

@@ -209,6 +209,16 @@ def limits(timer: Timer, supply: float) -> tuple[float, float]:
     return least, min(most, MOST_OHM)
 
 
+def starts_from(drive: Drive) -> float:
+    """Return the resistance in ohm up to which the node rests at the trip point or above.
+
+    There the discharge switch r cannot bring it below: r (1 - a) / a; 0 if ideal.
+    """
+    if drive.ideal:
+        return 0.0
+    return drive.discharge_resistance * (1.0 - drive.threshold) / drive.threshold
+
+
 def endless_from(g: ArrayLike, drive: Drive) -> Array:
     """Return the resistance from which on the interval never ends.
 

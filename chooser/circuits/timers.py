@@ -9,6 +9,7 @@ from functools import lru_cache
 from importlib import resources
 from math import inf, isnan
 from pathlib import Path
+from stat import S_ISREG
 from typing import Any
 
 from chooser.errors import BadRequestError, UnknownNameError
@@ -65,6 +66,7 @@ _PAIRS = tuple(
 _ABOVE_ZERO = frozenset({"supply_max", "threshold", "discharge_current_limit"})
 _BELOW_ONE = frozenset({"threshold", "timing_error_typical", "timing_error_limit"})
 _LONGEST = 60
+_MOST_BYTES = 2**20
 _MAY_BE_ENDLESS = frozenset({"supply_max", "discharge_current_limit"})
 
 
@@ -120,8 +122,8 @@ def _unknown(name: str, known: tuple[str, ...]) -> str:
 
     folded = {key.casefold(): key for key in known}
     near = get_close_matches(name.strip().casefold(), folded, n=1, cutoff=0.5)
-    hint = f"did you mean {folded[near[0]]}? " if near else ""
-    return f"{_shown(name)} is no timer that is known; {hint}Known are {', '.join(known)}."
+    hint = f"; did you mean {folded[near[0]]}?" if near else "."
+    return f"{_shown(name)} is no timer that is known{hint} Known are {', '.join(known)}."
 
 
 def _known(file: Path | None) -> Mapping[str, Timer]:
@@ -142,12 +144,24 @@ def _built_in() -> Mapping[str, Timer]:
 def _text_of(file: Path) -> str:
     """Return the text of a user's file, or refuse it in a sentence."""
     try:
-        return file.read_text(encoding="utf-8")
+        # Looked at before it is opened: opening a pipe would wait for somebody to write to it.
+        if not S_ISREG(file.stat().st_mode):
+            raise BadRequestError(f"{file} is not a plain file; name a file like timers.toml.")
+        with file.open("rb") as opened:
+            data = opened.read(_MOST_BYTES + 1)
+    except FileNotFoundError:
+        raise BadRequestError(f"There is no file {file}; check its name.") from None
+    except (OSError, ValueError) as error:
+        reason = (error.strerror if isinstance(error, OSError) else None) or str(error)
+        raise BadRequestError(
+            f"{file} cannot be read ({reason.lower()}); check its name and its rights."
+        ) from None
+    if len(data) > _MOST_BYTES:
+        raise BadRequestError(f"{file} is larger than 1 MiB; name a file like timers.toml.")
+    try:
+        return data.decode("utf-8")
     except UnicodeDecodeError:
         raise BadRequestError(f"{file} is not UTF-8 text; save it as UTF-8.") from None
-    except OSError as error:
-        reason = error.strerror or "it cannot be opened"
-        raise BadRequestError(f"{file} cannot be read: {reason}; check the path.") from None
 
 
 def _read(text: str, place: str, known: Mapping[str, Timer]) -> dict[str, Timer]:

@@ -78,7 +78,10 @@ Allow = Annotated[
         show_default=False,
     ),
 ]
-Why = Annotated[bool, typer.Option("--why", help="Say of each fit why it ranks before the next.")]
+Why = Annotated[
+    bool,
+    typer.Option("--why", help="Say of each fit all cautions, and why it ranks before the next."),
+]
 
 
 @app.callback()

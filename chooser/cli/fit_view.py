@@ -7,24 +7,31 @@ import sys
 import textwrap
 from collections import Counter
 from collections.abc import Sequence
+from dataclasses import dataclass
 from typing import Any
 
 import typer
 
 from chooser import quantities
+from chooser.cautions import Caution, Code
 from chooser.cli.stock_view import print_json, value_text
 from chooser.cli.tables import print_line, table_lines, visible
 from chooser.errors import Exit
 from chooser.networks import Network, members, write_network
 from chooser.parts import Holding
 from chooser.search.fits import parts_in
-from chooser.search.request import Answer, Fit, Refusal
-from chooser.search.terms import NEAREST, Rank
+from chooser.search.request import Answer, Fit
 
 HEADINGS = ("fit", "interval", "error", "parts", "in the band", "worst case", "watch")
 RIGHT = ("fit", "interval", "error", "parts", "in the band")
 INDENT = "     "
 NEAREST_SHOWN = 3
+"""Fits shown where all miss the band."""
+
+FAR = 10.0
+"""Ratio of interval and target from which an error is told as a factor."""
+
+PPM = 1e-6
 SAFETY = (
     "Check the built circuit with a watch or counter. Not for anything where a wrong interval can "
     "hurt; mains loads only over a rated, enclosed relay, wired by a qualified person under local "
@@ -59,27 +66,41 @@ def answer_lines(answer: Answer, width: int | None, *, with_reasons: bool) -> li
     """
     lines = [*_wrapped(_heading(answer), width)]
     shown = _shown(answer)
-    marks = _marks([fit for _, fit in shown])
+    notes = _notes(shown)
     if shown:
-        table = table_lines(HEADINGS, [_row(*pair, marks) for pair in shown], RIGHT)
+        table = table_lines(HEADINGS, [_row(*pair, notes) for pair in shown], RIGHT)
         folded = width is not None and max(map(len, table)) > width
         lines += ["", *([] if folded else table[:1])]
         for (number, fit), row in zip(shown, table[1:], strict=True):
-            lines += _folded(number, fit, marks, width) if folded else [row]
+            lines += _folded(number, fit, notes, width) if folded else [row]
             lines += _networks(fit, width)
-            if with_reasons and fit.why:
-                lines += _wrapped(f"before the next: {fit.why}", width, INDENT)
+            if with_reasons:
+                lines += _reasons(fit, width)
         lines.append("")
-    for caution, mark in marks.items():
-        lines += _wrapped(f"{mark}  {caution[0]}: {caution[1]}", width, hanging="   ")
+    for note in notes.values():
+        lines += _wrapped(str(note), width, hanging="   ")
+    if not with_reasons and any(len(fit.cautions) > 1 for _, fit in shown):
+        lines += _wrapped("+n  so many further cautions; --why spells them out.", width)
     if not any(fit.in_band for fit in answer.fits):
         lines += _wrapped(_nothing(answer), width)
     for sentence in answer.advice:
         lines += _wrapped(sentence, width)
+    if answer.refusals:
+        lines += _wrapped("By the house rules (--allow RULE lifts one):", width)
     for refusal in answer.refusals:
-        lines += _wrapped(_refusal(refusal), width)
+        lines += _wrapped(f"{refusal.rule}: {refusal.why}", width, "  ", "    ")
     lines += _wrapped(_searched(answer), width)
     return [*lines, *(_wrapped(SAFETY, width) if answer.fits else [])]
+
+
+def _reasons(fit: Fit, width: int | None) -> list[str]:
+    """Say the further cautions, and why the fit ranks before the next."""
+    lines = []
+    for caution in fit.cautions[1:]:
+        lines += _wrapped(f"also {caution.code}: {caution.text}", width, INDENT, INDENT + "    ")
+    if fit.why:
+        lines += _wrapped(f"before the next: {fit.why}", width, INDENT)
+    return lines
 
 
 def _shown(answer: Answer) -> list[tuple[int, Fit]]:
@@ -101,12 +122,26 @@ def _heading(answer: Answer) -> str:
     )
 
 
-def _marks(fits: Sequence[Fit]) -> dict[tuple[str, str], str]:
-    """Give every different first caution a letter, in the order of appearance."""
-    first = dict.fromkeys(
-        (str(fit.cautions[0].code), fit.cautions[0].text) for fit in fits if fit.cautions
-    )
-    return {caution: _letter(number) for number, caution in enumerate(first)}
+@dataclass(frozen=True, slots=True)
+class _Note:
+    """A caution below the table: its letter, and the fit whose figures it tells."""
+
+    letter: str
+    fit: int
+    caution: Caution
+
+    def __str__(self) -> str:
+        return f"{self.letter}  {self.caution.code} (fit {self.fit}): {self.caution.text}"
+
+
+def _notes(shown: Sequence[tuple[int, Fit]]) -> dict[Code, _Note]:
+    """Give every kind of first caution a letter, in the order of appearance."""
+    notes: dict[Code, _Note] = {}
+    for number, fit in shown:
+        if fit.cautions and fit.cautions[0].code not in notes:
+            note = _Note(_letter(len(notes)), number, fit.cautions[0])
+            notes[fit.cautions[0].code] = note
+    return notes
 
 
 def _letter(number: int) -> str:
@@ -114,24 +149,38 @@ def _letter(number: int) -> str:
     return name if number < 26 else _letter(number // 26 - 1) + name  # noqa: PLR2004
 
 
-def _row(number: int, fit: Fit, marks: dict[tuple[str, str], str]) -> list[str]:
+def _row(number: int, fit: Fit, notes: dict[Code, _Note]) -> list[str]:
     out = fit.outlook
-    mark = marks[str(fit.cautions[0].code), fit.cautions[0].text] if fit.cautions else ""
+    mark = notes[fit.cautions[0].code].letter if fit.cautions else ""
+    if len(fit.cautions) > 1:
+        mark += f" +{len(fit.cautions) - 1}"
     return [
         str(number),
         quantities.format_duration(out.nominal, digits=4),
-        _error_text(fit.error),
+        _error_text(fit),
         str(parts_in(fit)),
-        chance_text(out.chance),
+        "unknown" if _too_short(fit) else chance_text(out.chance),
         _worst_case(fit),
         mark,
     ]
 
 
-def _error_text(error: float) -> str:
-    """Write an error in percent to a fixed place, so that the column can be compared."""
-    percent = error * 100
-    return f"{percent:+.2f}%" if abs(percent) >= 0.005 else f"{percent:+.4f}%"  # noqa: PLR2004
+def _too_short(fit: Fit) -> bool:
+    """Tell whether the timer's own delays rule: then the formula says nothing of the odds."""
+    return any(caution.code is Code.SHORT_INTERVAL for caution in fit.cautions)
+
+
+def _error_text(fit: Fit) -> str:
+    """Write an error so that the column can be compared; far ones as a factor."""
+    percent = fit.error * 100
+    if fit.error >= FAR - 1:
+        return f"{fit.error + 1:,.0f} x too long"
+    if fit.error <= 1 / FAR - 1:
+        return f"{1 / (fit.error + 1):,.0f} x too short"
+    if abs(fit.error) < PPM / 2:
+        return "0%"
+    written = f"{percent:+.2f}%" if abs(percent) >= 0.005 else f"{percent:+.4f}%"  # noqa: PLR2004
+    return written if fit.in_band else f"{written} out"
 
 
 def chance_text(chance: float) -> str:
@@ -149,11 +198,9 @@ def _worst_case(fit: Fit) -> str:
     return f"{low} to {'never' if high is None else quantities.format_duration(high, digits=3)}"
 
 
-def _folded(
-    number: int, fit: Fit, marks: dict[tuple[str, str], str], width: int | None
-) -> list[str]:
+def _folded(number: int, fit: Fit, notes: dict[Code, _Note], width: int | None) -> list[str]:
     """Write the row as a sentence, for terminals too narrow for the table."""
-    _, interval, error, parts, chance, worst, mark = _row(number, fit, marks)
+    _, interval, error, parts, chance, worst, mark = _row(number, fit, notes)
     watch = f", watch {mark}" if mark else ""
     text = f"{number}. {interval} ({error}), {parts} parts, {chance} in the band, {worst}{watch}"
     return _wrapped(text, width, hanging=INDENT)
@@ -195,21 +242,13 @@ def _nothing(answer: Answer) -> str:
     return "Nothing in this stock lies in the accepted band; these come nearest."
 
 
-def _refusal(refusal: Refusal) -> str:
-    return f"{refusal.why} (--allow {refusal.rule} lifts this.)"
-
-
 def _searched(answer: Answer) -> str:
     searched = answer.searched
     if not searched.combinations:
         return "There was nothing to search."
-    space = f"{searched.combinations:,} circuits in {searched.seconds:.2g} s"
-    if answer.request.rank is Rank.BALANCED:
-        how = f"the {NEAREST} nearest resistor networks to each capacitor network were weighed"
-    else:
-        how = "exact: no circuit of the space is better placed"
-    limit = f" Not covered: {searched.limit}." if searched.limit else ""
-    return f"Searched {space}; {'' if searched.limit else how}".rstrip("; ") + f".{limit}"
+    noun = "circuit" if searched.combinations == 1 else "circuits"
+    how = searched.limit or "exact: no circuit of the space is better placed"
+    return f"Searched {searched.combinations:,} {noun} in {searched.seconds:.2g} s; {how}."
 
 
 def _wrapped(

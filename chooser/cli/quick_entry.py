@@ -15,7 +15,8 @@ from typing import Any
 
 from chooser import quantities
 from chooser.errors import AmbiguousValueError, BadRequestError, UnreadableValueError
-from chooser.parts import Entry, Kind, Part
+from chooser.parts import Entry, Kind, Part, Tolerance
+from chooser.plausible import complaints_of, drawer_name, free_text
 from chooser.sheets import traits
 
 # Which trait a word speaks of, by its form; tried in this order.
@@ -58,12 +59,10 @@ def read_entry(
 
     Raises
     ------
-    BadRequestError : the drawer has no name, or as `read_part`.
-    UnreadableValueError : as `read_part`.
+    BadRequestError : as `read_part`.
+    UnreadableValueError : the drawer has no such name as can be printed, or as `read_part`.
     """
-    name = " ".join(drawer.split())
-    if not name:
-        raise BadRequestError("The drawer has no name; give one, such as --drawer A4.")
+    name = drawer_name(drawer)
     pieces = quantities.parse_count(count)
     return Entry(read_part(text, kind, said), name, pieces, "the command line")
 
@@ -98,7 +97,7 @@ def read_part(text: str, kind: Kind | None = None, said: Mapping[str, str] | Non
         part = replace(part, technology=traits.read_technology(technology, kind))
     # Not checked field by field by mypy: each parser below gives what its field takes.
     fields: dict[str, Any] = {name: _READERS[name](seen, kind) for name, seen in texts.items()}
-    return _sensible(replace(part, **fields))
+    return _sensible(replace(part, **fields), cell.tolerance, texts)
 
 
 def _sorted_words(text: str) -> _Words:
@@ -196,27 +195,25 @@ _READERS: dict[str, Callable[[str, Kind], object]] = {
     "taper": _plain(traits.read_taper),
     "turns": _plain(quantities.parse_turns),
     "end_resistance": _plain(quantities.parse_resistance),
-    "note": _plain(str),
+    "note": _plain(free_text),
 }
 
 
-def _sensible(part: Part) -> Part:
-    """Refuse traits that the kind does not have, and a reading that lost its unit."""
-    furthest = 3.0  # no part that works is this many times off; a lost k or n is a thousand times
-    if not part.value / furthest <= part.effective <= part.value * furthest:
+def _sensible(part: Part, marked: Tolerance | None, seen: Mapping[str, str]) -> Part:
+    """Refuse what cannot be true of the part, as in a sheet.
+
+    Parameters
+    ----------
+    part : what was read. marked : the tolerance of its marking, or None.
+    seen : the traits as they were typed.
+    """
+    found = complaints_of(part, marked)
+    if found:
         raise BadRequestError(
-            f"The measured value is far from the {part.marking} printed on the part; "
-            "look at its unit, such as 9.97k."
-        )
-    foreign: tuple[str, ...] = ()
-    if part.kind not in (Kind.POT, Kind.TRIMMER):
-        foreign += ("taper", "turns", "end_resistance")
-    if part.kind is not Kind.CAPACITOR:
-        foreign += ("leakage",)
-    for name in foreign:
-        if getattr(part, name) is not None:
-            raise BadRequestError(
-                f"A {part.kind} has no {name.replace('_', ' ')}; "
-                "leave it out, or say another --kind."
+            "\n".join(
+                f"The {each.trait.replace('_', ' ')} {seen.get(each.trait, '')!r} {each.problem}; "
+                f"{each.advice}."
+                for each in found
             )
+        )
     return part

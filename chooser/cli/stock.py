@@ -47,18 +47,19 @@ def load(files: Files, preview: Preview = False, db: Db = None, as_json: Json = 
     """Bring the stock in line with sheets: all of them, or nothing where a row is wrong.
 
     A row states what lies in a drawer: loading it twice changes nothing, another count is
-    written down as a correction, an empty cell keeps what is known.
+    written down as a correction, an empty cell keeps what is known. A row that differs from the
+    only holding of its value in a drawer by a tolerance, a voltage or the like corrects it.
 
     \b
     Example: chooser stock load workshop.csv
     Example: chooser stock load sheets/ --preview
     """
+    from chooser.cli.stock_source import entries_from
     from chooser.cli.stock_view import plan_json, print_json, print_plan
-    from chooser.sheets.reading import read_sheets
     from chooser.stock import loading
     from chooser.stock.location import database_path
 
-    path, entries = database_path(db), read_sheets(files)
+    path, entries = database_path(db), entries_from(files)
     if preview:
         plan, change = loading.compare(path, entries), None
     else:
@@ -131,9 +132,11 @@ def _add(entry: Entry, db: str | None, *, as_json: bool) -> None:
     added = ledger.add(database_path(db), entry, f"{what} to {entry.drawer}")
     if as_json:
         holding = stock_view.holding_json(added.holding)
-        stock_view.print_json({"holding": holding, "created": added.created})
+        amended = list(added.amended)
+        stock_view.print_json({"holding": holding, "created": added.created, "amended": amended})
     else:
         stock_view.print_holdings([added.holding])
+        stock_view.say_amended(added)
 
 
 @app.command("list")

@@ -3,30 +3,20 @@
 from __future__ import annotations
 
 import json
-from collections.abc import Iterable, Sequence
+from collections.abc import Callable, Iterable, Sequence
 from dataclasses import asdict
 from typing import TYPE_CHECKING, Any
 
 from chooser import quantities
+from chooser.cli.boundary import say
 from chooser.cli.tables import print_line, print_table
 from chooser.parts import Count, Entry, Holding, Kind, Part
 
 if TYPE_CHECKING:
     from chooser.stock.comparing import Difference, LoadPlan
+    from chooser.stock.ledger import Added
 
-HEADINGS = (
-    "id",
-    "drawer",
-    "kind",
-    "value",
-    "tolerance",
-    "technology",
-    "voltage",
-    "count",
-    "claimed",
-    "free",
-    "measured",
-)
+HEADINGS = ("id", "drawer", "part", "count", "claimed", "free")
 
 
 def print_json(answer: dict[str, Any]) -> None:
@@ -35,9 +25,9 @@ def print_json(answer: dict[str, Any]) -> None:
 
 
 def print_holdings(holdings: Iterable[Holding]) -> None:
-    """Print holdings as a table."""
+    """Print holdings as a table, a line each; a long part goes on below itself."""
     rows = [_row(holding) for holding in holdings]
-    print_table(HEADINGS, rows, right_aligned=("id", "value", "count", "claimed", "free"))
+    print_table(HEADINGS, rows, ("id", "count", "claimed", "free"), wrapping="part")
 
 
 def holding_json(holding: Holding) -> dict[str, Any]:
@@ -64,12 +54,35 @@ def entry_json(entry: Entry) -> dict[str, Any]:
 
 def describe(part: Part) -> str:
     """Name a part in words: "10k 1% metal-film resistor"."""
-    tolerance = "" if part.tolerance is None else quantities.format_tolerance(part.tolerance)
-    voltage = "" if part.voltage is None else quantities.format_voltage(part.voltage)
-    words = [value_text(part, part.value), tolerance, voltage, part.technology or "", part.kind]
+    words = [*_printed(part), part.technology or "", part.kind]
     if part.measured is not None:
         words.append(f"measured {value_text(part, part.measured)}")
     return " ".join(word for word in words if word)
+
+
+def describe_fully(part: Part) -> str:
+    """Say everything that is known of a part, the kind only where the rest does not tell it."""
+    told = part.technology is not None and part.kind in (Kind.RESISTOR, Kind.CAPACITOR)
+    more = [
+        _known(part, name, name.replace("_", " ") + " ")
+        for name in ("measured", "meter", "leakage", "end_resistance")
+    ]
+    words = [
+        *_printed(part),
+        *(_known(part, name) for name in ("power", "tempco", "technology", "taper")),
+        "" if part.turns is None else f"{trait_text(part, 'turns')}-turn",
+        "" if told else part.kind,
+    ]
+    said = [" ".join(word for word in words if word), *more, part.note]
+    return ", ".join(each for each in said if each)
+
+
+def _printed(part: Part) -> list[str]:
+    return [value_text(part, part.value), _known(part, "tolerance"), _known(part, "voltage")]
+
+
+def _known(part: Part, name: str, lead: str = "") -> str:
+    return "" if getattr(part, name) is None else lead + trait_text(part, name)
 
 
 def value_text(part: Part, value: float) -> str:
@@ -116,7 +129,8 @@ def plan_sentence(plan: LoadPlan, *, preview: bool) -> str:
     if not plan.new and not plan.changed:
         return f"Nothing differs: {_holdings(plan.unchanged)} as the stock has them already."
     drawers = len({entry.drawer.casefold() for entry in plan.new})
-    parts = [f"{_holdings(len(plan.new))} new in {drawers} drawer{'' if drawers == 1 else 's'}"]
+    new = f"{_holdings(len(plan.new))} new in {drawers} drawer{'' if drawers == 1 else 's'}"
+    parts = [new] if plan.new else []
     for number, word in (
         (len(plan.recounted), "recounted"),
         (len(plan.amended), "amended"),
@@ -132,19 +146,13 @@ def count_text(count: Count) -> str:
 
 
 def _row(holding: Holding) -> list[str]:
-    part = holding.part
     return [
         str(holding.id),
         holding.drawer,
-        part.kind,
-        value_text(part, part.value),
-        "" if part.tolerance is None else quantities.format_tolerance(part.tolerance),
-        part.technology or "",
-        "" if part.voltage is None else quantities.format_voltage(part.voltage),
+        describe_fully(holding.part),
         count_text(holding.count),
         str(holding.claimed) if holding.claimed else "",
         "plenty" if holding.free is None else str(holding.free),
-        "" if part.measured is None else value_text(part, part.measured),
     ]
 
 
@@ -157,8 +165,8 @@ def _change_row(found: Difference) -> list[str]:
     before = [count_text(old.count)] if found.recounted else []
     after = [count_text(new.count)] if found.recounted else []
     for name in found.amended:
-        before.append(f"{name} {_trait(old.part, name)}")
-        after.append(f"{name} {_trait(new.part, name)}")
+        before.append(f"{name} {trait_text(old.part, name)}")
+        after.append(f"{name} {trait_text(new.part, name)}")
     words = [*(["recount"] if found.recounted else []), *(["amend"] if found.amended else [])]
     return [
         " and ".join(words),
@@ -169,9 +177,40 @@ def _change_row(found: Difference) -> list[str]:
     ]
 
 
-def _trait(part: Part, name: str) -> str:
+def say_amended(added: Added) -> None:
+    """Say which traits of a holding were changed by adding to it."""
+    if added.before is None or not added.amended:
+        return
+    changes = ", ".join(
+        f"{name.replace('_', ' ')} {trait_text(added.before.part, name)} to "
+        f"{trait_text(added.holding.part, name)}"
+        for name in added.amended
+    )
+    say(f"Holding {added.holding.id} was amended: {changes}.")
+
+
+def trait_text(part: Part, name: str) -> str:
+    """Write a trait of a part as a person would type it, "(none)" where it is not known."""
     value = getattr(part, name)
-    return "(none)" if value in (None, "") else str(value)
+    if value in (None, ""):
+        return "(none)"
+    if name in ("value", "measured"):
+        return value_text(part, value)
+    write = _WRITERS.get(name, str)
+    return write(value)
+
+
+_WRITERS: dict[str, Callable[[Any], str]] = {
+    "tolerance": quantities.format_tolerance,
+    "power": quantities.format_power,
+    "voltage": quantities.format_voltage,
+    "tempco": quantities.format_tempco,
+    "meter": quantities.format_percent,
+    "leakage": quantities.format_current,
+    "turns": "{:g}".format,
+    "end_resistance": quantities.format_resistance,
+    "price": "{:g}".format,
+}
 
 
 def _unmentioned_sentence(holdings: Sequence[Holding]) -> str:
@@ -179,7 +218,7 @@ def _unmentioned_sentence(holdings: Sequence[Holding]) -> str:
     more = f" and {len(holdings) - 5} more" if len(holdings) > 5 else ""  # noqa: PLR2004
     return (
         f"Not in these sheets, though their drawers are, and left as they were: {shown}{more}; "
-        "if a row was corrected, take the old holding's parts out of the count."
+        "where one is gone, or has become another row, load its old row once more with count 0."
     )
 
 

@@ -4,30 +4,31 @@ from __future__ import annotations
 
 from collections.abc import Collection, Sequence
 
-from chooser.circuits.leakage import leak_conductance
+from chooser.cautions import SMALL_CURRENT
+from chooser.circuits.leakage import leak_conductance, taken_for
 from chooser.circuits.monostable import resistance, typical
 from chooser.parts import Holding, Kind
 from chooser.search.house_rules import LEAST_FARAD, Usable, leak_bound, resistor_limits
 from chooser.search.purchase import one_purchase
 from chooser.search.request import Fit, Request
-from chooser.search.terms import Rule
+from chooser.search.terms import USUAL_PARTS, Rule
 
-TOO_LONG = (
-    "Every capacitor here would need a resistor beyond what the timer's currents and the leakage "
-    "allow: such an interval drifts or never ends. Ways out: a better capacitor (film, "
-    "low-leakage), a CMOS timer, or an oscillator with a counter that divides a shorter interval."
-)
+FURTHER = "divide a shorter interval with an oscillator and a counter"
+"""What is left where neither parts nor timer reach so far."""
 
-TOO_SHORT = (
-    "Every capacitor here would need a resistor below what the discharge pin can carry. "
-    "Way out: a smaller capacitor, 1 nF or more."
+ALL_SMALL = (
+    "All the capacitors that may be used come to less than 1n together, where strays count; add "
+    f"larger ones, or --allow {Rule.STRAYS} and time the built circuit."
 )
 
 
-NO_PURCHASE = (
-    "No single resistor or capacitor of the usual series would get there either; accept a wider "
-    "band, allow more parts, or build fewer boards."
-)
+LARGE_ENOUGH = 100e-6
+"""Farad up to which a larger capacitor is the plain way to a longer interval."""
+
+SMALL_ENOUGH = 10e-9
+"""Farad from which on down a smaller capacitor is no longer the plain way to a shorter interval."""
+
+LEAKY = ("electrolytic", "electrolytic-non-polar", "tantalum", "ceramic")
 
 
 def advice_for(
@@ -52,17 +53,23 @@ def advice_for(
         return missing
     if Rule.STRAYS not in request.lifted and _most_farad(usable, request) < LEAST_FARAD:
         return (ALL_SMALL,)
-    bought = one_purchase(usable.resistors, usable.capacitors, request)
     reason = _out_of_reach(usable, request)
-    if bought is None and not reason:
-        return (NO_PURCHASE,)
-    return (*reason, *([str(bought)] if bought else []))
+    bought = one_purchase(usable.resistors, usable.capacitors, request)
+    if bought is not None:
+        return (*reason, str(bought))
+    return reason or (_no_purchase(request),)
 
 
-ALL_SMALL = (
-    "All the capacitors that may be used come to less than 1n together, where strays count; add "
-    f"larger ones, or --allow {Rule.STRAYS} and time the built circuit."
-)
+def _no_purchase(request: Request) -> str:
+    ways = ["accept a wider band (--within)"]
+    if request.most_resistors < USUAL_PARTS:
+        ways.append("allow more parts (--most-resistors)")
+    if request.boards > 1:
+        ways.append("build fewer boards")
+    return (
+        "One part of the usual series beside one of yours would not get there either; "
+        f"{' or '.join(ways)}."
+    )
 
 
 def _missing(stock: Sequence[Holding], usable: Usable) -> tuple[str, ...]:
@@ -91,17 +98,49 @@ def _most_farad(usable: Usable, request: Request) -> float:
 
 
 def _out_of_reach(usable: Usable, request: Request) -> tuple[str, ...]:
-    """Say so where every single capacitor wants a resistance outside the rules' limits."""
+    """Say so where every capacitor wants a resistance outside the rules' limits."""
     drive = typical(request.timer, request.supply)
     least, most = resistor_limits(request)
-    high = low = 0
+    wishes: list[tuple[float, float]] = []
     for holding in usable.capacitors:
+        farad = holding.part.effective
+        if farad < LEAST_FARAD and Rule.STRAYS not in request.lifted:
+            continue
         leak = 0.0
         if not request.timer.ideal:
             leak = leak_conductance(holding.part, request.supply).typical
-        wanted = float(resistance(request.target, holding.part.effective, leak, drive))
-        high += wanted > min(most, float(leak_bound(leak, drive)))
-        low += wanted < least
-    if high == len(usable.capacitors):
-        return (TOO_LONG,)
-    return (TOO_SHORT,) if low == len(usable.capacitors) else ()
+        wanted = float(resistance(request.target, farad, leak, drive))
+        wishes.append((wanted, min(most, float(leak_bound(leak, drive)))))
+    if wishes and all(wanted > bound for wanted, bound in wishes):
+        return (_too_long(usable, request),)
+    if wishes and all(wanted < least for wanted, _ in wishes):
+        return (_too_short(usable),)
+    return ()
+
+
+def _too_short(usable: Usable) -> str:
+    """Name the way out of an interval that is too short."""
+    smallest = min(holding.part.effective for holding in usable.capacitors)
+    way = "take a smaller capacitor"
+    if smallest <= SMALL_ENOUGH:
+        way = "so short an interval needs a faster timer or a logic one-shot"
+    return (
+        f"Every capacitor here would need a resistor below what the discharge pin can carry; {way}."
+    )
+
+
+def _too_long(usable: Usable, request: Request) -> str:
+    """Name the ways out of an interval that is too long, the likely one first."""
+    ways = []
+    best = max(usable.capacitors, key=lambda holding: holding.part.effective)
+    if best.part.effective < LARGE_ENOUGH:
+        ways.append("a larger capacitor")
+    elif taken_for(best.part) in LEAKY:
+        ways.append("a capacitor that leaks less (film, low-leakage)")
+    if request.timer.threshold_current_limit > SMALL_CURRENT:
+        ways.append("a CMOS timer")
+    return (
+        "Every capacitor here would need a resistor beyond what the timer's currents and the "
+        "leakage allow: such an interval drifts or never ends. Ways out: "
+        f"{', '.join([*ways, 'or to ' + FURTHER])}."
+    )

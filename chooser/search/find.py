@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Collection, Iterable, Sequence
 from operator import attrgetter
 from time import perf_counter
 
@@ -13,12 +13,13 @@ from chooser.search.balanced import BalancedSearch
 from chooser.search.choosing import Choice, Drawers, best_choice, choices
 from chooser.search.exact import ExactSearch
 from chooser.search.fits import explained, fit_of
-from chooser.search.house_rules import Usable, check_part_numbers, usable_parts
+from chooser.search.house_rules import Usable, check_request, usable_parts
 from chooser.search.ranking import Judge
 from chooser.search.recheck import recheck
-from chooser.search.request import Answer, Request, Searched
+from chooser.search.request import Answer, Fit, Request, Searched
+from chooser.search.shortage import shortage
 from chooser.search.space import Space, combinations
-from chooser.search.terms import Rank
+from chooser.search.terms import NEAREST, Rank
 
 
 def find_fits(holdings: Iterable[Holding], request: Request) -> Answer:
@@ -41,31 +42,59 @@ def find_fits(holdings: Iterable[Holding], request: Request) -> Answer:
         A fit failed its own check.
     """
     start = perf_counter()
-    check_part_numbers(request)
+    check_request(request)
     check_supply(request.timer, request.supply)
     stock = tuple(sorted(holdings, key=attrgetter("id")))
     usable = usable_parts(stock, request)
-    found, limit = search_choices(usable, request)
-    by_id = {holding.id: holding for holding in stock}
-    fits = [fit_of(choice, by_id, request) for choice in found]
-    for fit in fits:
-        recheck(fit, request)
+    found, not_listed = search_choices(usable, request)
+    fits = _fits(found, stock, request)
+    limit = _limit_of(not_listed, request)
     searched = Searched(
-        combinations=combinations(usable.resistors, usable.capacitors, request),
-        complete=not limit and request.rank is not Rank.BALANCED,
+        combinations=combinations(usable.resistors, usable.capacitors, request, not_listed),
+        complete=not limit,
         limit=limit,
         seconds=perf_counter() - start,
     )
+    advice = advice_for(stock, usable, fits, request)
+    if advice and request.boards > 1:
+        advice = (*shortage(request, lambda fewer: _first_fit(stock, fewer)), *advice)
     return Answer(
         request=request,
         fits=explained(fits, request.rank),
         searched=searched,
         refusals=usable.refusals,
-        advice=advice_for(stock, usable, fits, request),
+        advice=advice,
     )
 
 
-def search_choices(usable: Usable, request: Request) -> tuple[list[Choice], str]:
+def _fits(found: Sequence[Choice], stock: Sequence[Holding], request: Request) -> list[Fit]:
+    """Work out what each choice will do, and check it."""
+    by_id = {holding.id: holding for holding in stock}
+    fits = [fit_of(choice, by_id, request) for choice in found]
+    for fit in fits:
+        recheck(fit, request)
+    return fits
+
+
+def _first_fit(stock: Sequence[Holding], request: Request) -> Fit | None:
+    found, _ = search_choices(usable_parts(stock, request), request)
+    return next(iter(_fits(found[:1], stock, request)), None)
+
+
+def _limit_of(not_listed: Collection[int], request: Request) -> str:
+    """Say what the search did not cover."""
+    said = []
+    if request.rank is Rank.BALANCED:
+        said.append(
+            f"only the {NEAREST} nearest resistor networks to each capacitor network were weighed"
+        )
+    if not_listed:
+        sizes = " and ".join(str(size) for size in sorted(not_listed))
+        said.append(f"networks of {sizes} capacitors, too many to list, were not covered")
+    return "; ".join(said)
+
+
+def search_choices(usable: Usable, request: Request) -> tuple[list[Choice], frozenset[int]]:
     """Search alone, without working out what each choice will do.
 
     Parameters
@@ -74,15 +103,16 @@ def search_choices(usable: Usable, request: Request) -> tuple[list[Choice], str]
 
     Returns
     -------
-    The choices that get a place, best first, and what could not be covered, or "".
+    The choices that get a place, best first, and the numbers of capacitors whose networks were
+    too many to list.
     """
     space = Space(usable.resistors, usable.capacitors, request)
     if not space.resistors.lots or not space.capacitors.lots:
-        return [], ""
+        return [], frozenset()
     judge = Judge(request, space.resistors, space.capacitors)
     drawers = Drawers.of(space.resistors), Drawers.of(space.capacitors)
     if request.rank is Rank.BALANCED:
         pairings = BalancedSearch(space, judge).pairings()
-        return [best_choice(pairing, *drawers) for pairing in pairings], space.limit
+        return [best_choice(pairing, *drawers) for pairing in pairings], space.not_listed
     found = choices(ExactSearch(space, judge).pairings(), *drawers, request)
-    return found[: request.top], space.limit
+    return found[: request.top], space.not_listed

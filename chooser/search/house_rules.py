@@ -13,11 +13,16 @@ from numpy.typing import ArrayLike, NDArray
 
 from chooser.circuits.monostable import Drive, limits
 from chooser.errors import BadRequestError
-from chooser.parts import Holding, Kind, Part
-from chooser.quantities import format_capacitance, format_resistance, format_voltage
+from chooser.parts import Holding, Kind
+from chooser.quantities import (
+    format_capacitance,
+    format_percent,
+    format_resistance,
+    format_voltage,
+)
 from chooser.search.request import Refusal, Request
 from chooser.search.terms import REASONS, USUAL_PARTS, Rule
-from chooser.technologies import technology_of
+from chooser.technologies import is_polarised, technology_of
 
 LEAST_FARAD = 1e-9
 """Least timing capacitance: 10 pF of strays, a usual figure, are then 1 %."""
@@ -25,8 +30,8 @@ LEAST_FARAD = 1e-9
 LEAK_RATIO = 3.0
 """Least charging current at the trip point over the capacitor's typical leakage.
 
-At 3 the interval is stretched by a fifth to a quarter, and what it will be next week is
-anybody's guess; the limit is ours, the stretch follows from the charging equation.
+At 3 the leak has stretched the interval by a sixth (17 %, from the charging equation), and what
+it will be next week is anybody's guess; the limit is ours.
 """
 
 
@@ -45,13 +50,20 @@ class Usable:
     refusals: tuple[Refusal, ...]
 
 
-def check_part_numbers(request: Request) -> None:
-    """Refuse a request for slots of more parts than anyone solders, unless the rule is lifted.
+def check_request(request: Request) -> None:
+    """Refuse a request that cannot be meant.
 
     Raises
     ------
     BadRequestError
+        A band of nothing or of everything, or slots of more parts than anyone solders without the
+        rule being lifted.
     """
+    if not 0 < request.within < 1:
+        raise BadRequestError(
+            f"A band of {format_percent(request.within, digits=4)} to either side accepts "
+            f"{'nothing' if request.within <= 0 else 'everything'}; write one such as 2%."
+        )
     most = max(request.most_resistors, request.most_capacitors)
     if most > USUAL_PARTS and Rule.MANY_PARTS not in request.lifted:
         raise BadRequestError(
@@ -95,7 +107,14 @@ def _network_refusals(capacitors: Sequence[Holding], request: Request) -> Iterat
         why = f"Series of polarised capacitors are left out: {REASONS[Rule.POLARISED_SERIES]}."
         yield Refusal(Rule.POLARISED_SERIES, why)
     least_ohm, most_ohm = resistor_limits(request)
-    if 0 < least_ohm < most_ohm < float("inf"):
+    if least_ohm > most_ohm:
+        yield Refusal(
+            Rule.RESISTOR_LIMITS,
+            f"No timing resistance suits the {request.timer.name} timer: its discharge pin needs "
+            f"{format_resistance(least_ohm, digits=3)} or more, its own currents "
+            f"{format_resistance(most_ohm, digits=3)} or less.",
+        )
+    elif least_ohm > 0 and most_ohm < float("inf"):
         yield Refusal(
             Rule.RESISTOR_LIMITS,
             f"Timing resistances stay between {format_resistance(least_ohm, digits=3)} "
@@ -128,12 +147,6 @@ def leak_bound(leak: ArrayLike, drive: Drive) -> NDArray[np.float64]:
     """
     with np.errstate(divide="ignore"):
         return np.asarray((1 - drive.threshold) / (LEAK_RATIO * drive.threshold * np.asarray(leak)))
-
-
-def is_polarised(part: Part) -> bool:
-    """Tell whether reverse voltage destroys the part; unknown technologies count as unpolarised."""
-    technology = technology_of(part)
-    return technology is not None and technology.polarised
 
 
 def _is_class_2(holding: Holding) -> bool:

@@ -34,6 +34,7 @@ class Purchase:
     ----------
     bought : the part. series : the E-series it is from. owned : the holding used beside it.
     interval : what they make, in second. error : relative to the target.
+    boards : how many are built, each with one of the bought parts.
     """
 
     bought: Part
@@ -41,13 +42,15 @@ class Purchase:
     owned: Holding
     interval: float
     error: float
+    boards: int = 1
 
     def __str__(self) -> str:
         write = {Kind.CAPACITOR: format_capacitance, Kind.RESISTOR: format_resistance}
         bought, owned = self.bought, self.owned.part
         what = f"{write[bought.kind](bought.value)} {bought.technology or ''}".rstrip()
+        number = "One" if self.boards == 1 else f"{self.boards} of"
         return (
-            f"One {what} {bought.kind} ({self.series}) bought for the "
+            f"{number} {what} {bought.kind} ({self.series}) bought for the "
             f"{write[owned.kind](owned.effective)} in drawer {self.owned.drawer} would make "
             f"{format_duration(self.interval, digits=4)} "
             f"({format_percent(self.error, digits=2, signed=True)})."
@@ -119,7 +122,7 @@ def _purchase(bought: Part, series: str, owned: Holding, request: Request) -> Pu
     ohm, farad = pair[0].effective, pair[1].effective
     drive = typical(request.timer, request.supply)
     time = float(interval(ohm, farad, _leak(pair[1], request), drive))
-    return Purchase(bought, series, owned, time, time / request.target - 1)
+    return Purchase(bought, series, owned, time, time / request.target - 1, request.boards)
 
 
 def _allowed(ohm: float, capacitor: Part, leak: float, request: Request) -> bool:

@@ -94,9 +94,8 @@ class Searched:
     Attributes
     ----------
     combinations : circuits in the space, listed or covered by argument.
-    complete : whether the answer is proven for the whole space; the balanced order weighs only
-        the nearest networks and never says so.
-    limit : what was left out and why, or "".
+    complete : whether the answer is proven for the whole space.
+    limit : what alone was weighed, or was not covered; "" where complete.
     seconds : time taken.
     """
 

@@ -10,15 +10,19 @@ import numpy as np
 from numpy.typing import NDArray
 
 from chooser.circuits.leakage import leak_conductance
-from chooser.circuits.monostable import endless_from, resistance, typical
+from chooser.circuits.monostable import endless_from, resistance, starts_from, typical
 from chooser.networks import Group, Join, Leaf
 from chooser.parts import Holding, Part, Tolerance
-from chooser.search.house_rules import LEAST_FARAD, is_polarised, leak_bound, resistor_limits
+from chooser.search.house_rules import LEAST_FARAD, leak_bound, resistor_limits
 from chooser.search.pools import Floats, Pool, gather
 from chooser.search.request import Request
 from chooser.search.tables import Rows, Shape, Tables, every_network
 from chooser.search.terms import Rank, Rule
+from chooser.technologies import is_polarised
 from chooser.uncertainty import limits_of
+
+MARGIN = 1e-6
+"""Distance, relative, from where the interval becomes none or endless: nearer, rounding rules."""
 
 
 def resistor_pool(holdings: Sequence[Holding], request: Request) -> Pool:
@@ -101,8 +105,9 @@ def _slots(rows: Rows, pool: Pool, leaks: Floats, request: Request) -> Capacitor
     farad = rows.evaluate(pool.value, Join.PARALLEL)
     leak = rows.evaluate(leaks, Join.PARALLEL)
     least, most = resistor_limits(request)
-    # An interval that never ends is no answer, whatever rule is lifted.
-    bounds = np.minimum(most, endless_from(leak, drive) * (1 - 1e-12))
+    # An interval that never starts or never ends is no answer, whatever rule is lifted.
+    least = max(least, starts_from(drive) * (1 + MARGIN))
+    bounds = np.minimum(most, endless_from(leak, drive) * (1 - MARGIN))
     if Rule.RESISTOR_LIMITS not in request.lifted and not request.timer.ideal:
         bounds = np.minimum(bounds, leak_bound(leak, drive))
     wanted = resistance(request.target, farad, leak, drive)

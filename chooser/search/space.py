@@ -2,12 +2,11 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Collection, Iterator, Sequence
 from dataclasses import dataclass
 
 from chooser.parts import Holding
 from chooser.search.counting import networks_from, networks_from_polarised
-from chooser.search.house_rules import is_polarised
 from chooser.search.pools import Pool, uses_of
 from chooser.search.request import Request
 from chooser.search.slots import (
@@ -18,6 +17,7 @@ from chooser.search.slots import (
 )
 from chooser.search.tables import Tables
 from chooser.search.terms import Rule
+from chooser.technologies import is_polarised
 
 MOST_LISTED = 150_000
 """Groups of a resistor table that are listed; a larger one is split, because sorting costs more."""
@@ -49,14 +49,14 @@ class Space:
 
     Attributes
     ----------
-    limit : what could not be covered and why, or "".
+    not_listed : numbers of capacitors whose networks were too many to list.
     """
 
     def __init__(
         self, resistors: Sequence[Holding], capacitors: Sequence[Holding], request: Request
     ) -> None:
         self.request = request
-        self.limit = ""
+        self.not_listed: frozenset[int] = frozenset()
         self.resistors: Pool = resistor_pool(resistors, request)
         self.capacitors: Pool = capacitor_pool(capacitors, request)
         self.resistor_tables = Tables(self.resistors.adding, self.resistors.uses, MOST_LISTED)
@@ -74,14 +74,10 @@ class Space:
                     yield Level(parts - capacitors, capacitors)
 
     def slots(self, capacitors: int) -> CapacitorSlots | None:
-        """Return the capacitor networks of a size; None, and a note, where they are too many."""
+        """Return the capacitor networks of a size; None, noted, where they are too many."""
         if capacitors not in self._slots:
-            count = self._capacitor_tables.count(capacitors)
-            if count > MOST_CAPACITOR_NETWORKS:
-                self.limit = (
-                    f"{count:,} networks of {capacitors} capacitors are too many to list; "
-                    "circuits with fewer capacitors are covered"
-                )
+            if self._capacitor_tables.count(capacitors) > MOST_CAPACITOR_NETWORKS:
+                self.not_listed |= {capacitors}
                 self._slots[capacitors] = None
             else:
                 self._slots[capacitors] = capacitor_slots(
@@ -91,23 +87,27 @@ class Space:
 
 
 def combinations(
-    resistors: Sequence[Holding], capacitors: Sequence[Holding], request: Request
+    resistors: Sequence[Holding],
+    capacitors: Sequence[Holding],
+    request: Request,
+    not_listed: Collection[int] = (),
 ) -> int:
-    """Count the circuits of the space by formula.
+    """Count the circuits that the search covered, listed or by argument, by formula.
 
     Parameters
     ----------
     resistors, capacitors : usable holdings.
     request : its boards divide the counts, its most_resistors and most_capacitors bound the size.
+    not_listed : numbers of capacitors that were not covered.
     """
     ohms = [uses_of(holding, request.boards) for holding in resistors]
-    farads = [holding for holding in capacitors if uses_of(holding, request.boards)]
     apart = Rule.POLARISED_SERIES not in request.lifted
-    polar = [h for h in farads if apart and is_polarised(h.part)]
-    free = [h for h in farads if not (apart and is_polarised(h.part))]
+    polar = [holding for holding in capacitors if apart and is_polarised(holding.part)]
+    free = [holding for holding in capacitors if not (apart and is_polarised(holding.part))]
     free_uses = [uses_of(holding, request.boards) for holding in free]
     polar_uses = [uses_of(holding, request.boards) for holding in polar]
     return sum(networks_from(ohms, size) for size in range(1, request.most_resistors + 1)) * sum(
         networks_from_polarised(free_uses, polar_uses, size)
         for size in range(1, request.most_capacitors + 1)
+        if size not in not_listed
     )

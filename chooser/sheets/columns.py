@@ -7,10 +7,9 @@ from dataclasses import dataclass
 from difflib import get_close_matches
 
 from chooser.parts import Kind
+from chooser.plausible import TRAIT_KINDS
 
 _EVERY = tuple(Kind)
-_POTS = (Kind.POT, Kind.TRIMMER)
-_OHMIC = (Kind.RESISTOR, *_POTS)
 
 
 @dataclass(frozen=True, slots=True)
@@ -67,7 +66,12 @@ COLUMNS: tuple[Column, ...] = (
         "such as metal-film, polyester or electrolytic",
         synonyms=("tech", "material", "dielectric", "construction"),
     ),
-    Column("power", "rated power, such as 0.25W or 1/4W", kinds=_OHMIC, synonyms=("watts",)),
+    Column(
+        "power",
+        "rated power, such as 0.25W or 1/4W",
+        kinds=TRAIT_KINDS["power"],
+        synonyms=("watts",),
+    ),
     Column(
         "voltage",
         "rated voltage, such as 16V",
@@ -87,15 +91,20 @@ COLUMNS: tuple[Column, ...] = (
     Column(
         "leakage",
         "leakage current at rated voltage, such as 3uA",
-        kinds=(Kind.CAPACITOR,),
+        kinds=TRAIT_KINDS["leakage"],
         synonyms=("leakage current", "leak"),
     ),
-    Column("taper", "linear, log or reverse-log", kinds=_POTS, synonyms=("law", "curve")),
-    Column("turns", "turns of travel, such as 1 or 25", kinds=_POTS),
+    Column(
+        "taper",
+        "linear, log or reverse-log",
+        kinds=TRAIT_KINDS["taper"],
+        synonyms=("law", "curve"),
+    ),
+    Column("turns", "turns of travel, such as 1 or 25", kinds=TRAIT_KINDS["turns"]),
     Column(
         "end_resistance",
         "resistance left at the stop, such as 2R",
-        kinds=_POTS,
+        kinds=TRAIT_KINDS["end_resistance"],
         synonyms=("minimum resistance", "residual resistance"),
     ),
     Column("price", "price of one pack, such as 1.20", synonyms=("cost",)),

@@ -8,7 +8,17 @@ from collections.abc import Iterator
 from functools import lru_cache
 
 from chooser.sheets.columns import column_headed
-from chooser.sheets.grid import MAX_COLUMNS, MAX_ROWS, Cell, Grid, Row, refuse, text_cell, trimmed
+from chooser.sheets.grid import (
+    FEWER_COLUMNS,
+    MAX_COLUMNS,
+    MAX_ROWS,
+    Cell,
+    Grid,
+    Row,
+    refuse,
+    text_cell,
+    trimmed,
+)
 
 _SEPARATORS = (",", ";", "\t")
 _WIDE_MARKS = (b"\xff\xfe", b"\xfe\xff")
@@ -95,7 +105,7 @@ def _records(
             if number > MAX_ROWS:
                 refuse(file, f"has more than {MAX_ROWS} rows", "split it into several sheets")
             if len(fields) > MAX_COLUMNS:
-                refuse(file, f"has more than {MAX_COLUMNS} columns", row=number)
+                refuse(file, f"has more than {MAX_COLUMNS} columns", FEWER_COLUMNS, row=number)
             yield number, fields
     except csv.Error as error:
         refuse(

@@ -17,6 +17,7 @@ MAX_ROWS = 50_000
 """Most rows of one sheet, blank ones counted."""
 MAX_COLUMNS = 256
 """Most columns of one sheet."""
+FEWER_COLUMNS = "keep the columns of the stock and remove the others"
 MAX_CELL = 500
 """Longest text of a cell."""
 
@@ -56,10 +57,12 @@ class Grid:
     ----------
     file : the file as the user gave it, with the sheet's name where it holds several.
     rows : in order; the first one holds the headings.
+    notes : sentences about what beside it was passed over.
     """
 
     file: str
     rows: tuple[Row, ...]
+    notes: tuple[str, ...] = ()
 
 
 def refuse(

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Iterable, Sequence
 from dataclasses import dataclass, field
 from pathlib import Path
 
@@ -17,7 +17,13 @@ MAX_ENTRIES = 200_000
 """Most holdings read in one go, kits counted out."""
 
 
-def read_sheets(paths: Sequence[Path]) -> tuple[Entry, ...]:
+Rows = Callable[[Sequence[Row]], Iterable[Row]]
+"""What the rows of a sheet are passed through while they are read, as to show how far it is."""
+
+
+def read_sheets(
+    paths: Sequence[Path], notes: list[str] | None = None, through: Rows = iter
+) -> tuple[Entry, ...]:
     """Read stock sheets, all or nothing.
 
     Parameters
@@ -25,6 +31,8 @@ def read_sheets(paths: Sequence[Path]) -> tuple[Entry, ...]:
     paths : CSV and XLSX files, and folders of them. Of a folder every `.csv` and `.xlsx` file is
         read in order of name; hidden files and lock files (`~$...`) are passed over. A file that
         is named twice is read once.
+    notes : sentences about worksheets that were passed over are put here.
+    through : is handed the rows of each sheet and hands them back one by one.
 
     Returns
     -------
@@ -36,7 +44,7 @@ def read_sheets(paths: Sequence[Path]) -> tuple[Entry, ...]:
     SheetError
         Something is wrong in any of them; it carries every finding in all of them.
     """
-    stated = _Stated()
+    stated = _Stated(through)
     seen: set[Path] = set()
     for path in paths:
         try:
@@ -50,6 +58,8 @@ def read_sheets(paths: Sequence[Path]) -> tuple[Entry, ...]:
                 _read_member(member, stated)
     if stated.findings:
         raise SheetError(stated.findings)
+    if notes is not None:
+        notes.extend(stated.notes)
     return tuple(stated.entries)
 
 
@@ -59,12 +69,15 @@ class _Stated:
 
     Attributes
     ----------
-    entries, findings : in order of files and rows.
+    through : as in `read_sheets`.
+    entries, findings, notes : in order of files and rows.
     first : the entry that stated a holding first, by its identity.
     """
 
+    through: Rows
     entries: list[Entry] = field(default_factory=list)
     findings: list[Finding] = field(default_factory=list)
+    notes: list[str] = field(default_factory=list)
     first: dict[tuple[object, ...], Entry] = field(default_factory=dict)
 
 
@@ -77,13 +90,14 @@ def _read_member(path: Path, stated: _Stated) -> None:
 
 
 def _read_grid(grid: Grid, stated: _Stated) -> None:
+    stated.notes.extend(grid.notes)
     headings = read_headings(grid.file, grid.rows[0])
     stated.findings.extend(headings.findings)
     if not headings.complete:
         return
     if len(grid.rows) == 1:
         refuse(grid.file, "has headings but no rows", "add a row for each holding")
-    for row in grid.rows[1:]:
+    for row in stated.through(grid.rows[1:]):
         _read_one(grid.file, row, headings, stated)
         if len(stated.entries) > MAX_ENTRIES:
             refuse(

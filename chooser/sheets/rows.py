@@ -10,6 +10,7 @@ from typing import TypeVar
 
 from chooser.errors import Finding, UnreadableValueError
 from chooser.parts import Count, Entry, Kind, Part
+from chooser.plausible import complaints_of, drawer_name, free_text, unfitting
 from chooser.quantities import (
     parse_count,
     parse_current,
@@ -37,8 +38,6 @@ from chooser.sheets.traits import (
 
 _T = TypeVar("_T")
 _NOTHING = re.compile(r"[-\u2013\u2014?]|n/a", re.IGNORECASE)
-_FURTHEST = 3.0
-"""No part that still works is this many times off; a lost `k` or `n` is a thousand times."""
 
 _remembering = lru_cache(maxsize=4096)
 """A long sheet says the same few things over and over; reading each once halves the time."""
@@ -86,7 +85,7 @@ class RowReader:
 
     def text(self, column: str) -> str:
         """Read a cell of free text, "" where it is blank or was refused."""
-        return self.read(column, str) or ""
+        return self.read(column, free_text) or ""
 
     def find(self, column: str | None, seen: str, problem: str, advice: str = "") -> None:
         """Note a fault."""
@@ -102,7 +101,7 @@ def read_row(file: str, row: Row, headings: Headings) -> tuple[tuple[Entry, ...]
             reader.find(column.name, "", "is blank, and every row needs it", f"give {column.holds}")
     kind = reader.read("kind", read_kind)
     count = reader.read("count", _READ_COUNT)
-    drawer = reader.text("drawer")
+    drawer = reader.read("drawer", drawer_name) or ""
     if kind is None:
         return (), reader.findings
     parts = _parts(reader, kind)
@@ -171,12 +170,9 @@ def _find_unfitting(reader: RowReader, kind: Kind) -> None:
     """Find cells in columns that mean nothing for this kind of part, and take them out."""
     for column in COLUMNS:
         if kind not in column.kinds and column.name in reader.cells:
-            reader.find(
-                column.name,
-                reader.cells.pop(column.name).text,
-                f"is said of a {kind.value}, which has no {column.name.replace('_', ' ')}",
-                "clear the cell",
-            )
+            found = unfitting(column.name, kind)
+            seen = reader.cells.pop(column.name).text
+            reader.find(column.name, seen, found.problem, found.advice)
 
 
 def _traits(reader: RowReader, kind: Kind) -> Part:
@@ -206,34 +202,16 @@ def _traits(reader: RowReader, kind: Kind) -> Part:
 
 def _find_contradictions(reader: RowReader, traits: Part, value: ValueCell) -> None:
     """Find cells that are fine alone and cannot be true together."""
-    least = min(value.values)
-    if traits.measured is not None and len(value.values) > 1:
+    kit = len(value.values) > 1
+    if kit and traits.measured is not None:
         reader.find(
             "measured",
             reader.cells["measured"].text,
             "is one measured value for a whole kit",
             "give the measured piece a row of its own",
         )
-    elif traits.measured is not None and not (
-        least / _FURTHEST <= traits.measured <= least * _FURTHEST
-    ):
-        reader.find(
-            "measured",
-            reader.cells["measured"].text,
-            f"is far from the value {traits.marking}",
-            "look at its unit, or give the value that is printed on the part",
-        )
-    if value.tolerance is not None and traits.tolerance not in {None, value.tolerance}:
-        reader.find(
-            "tolerance",
-            reader.cells["tolerance"].text,
-            f"is not what the letter of the marking {traits.marking} says",
-            "correct the one that is wrong",
-        )
-    if traits.end_resistance is not None and traits.end_resistance >= least:
-        reader.find(
-            "end_resistance",
-            reader.cells["end_resistance"].text,
-            f"is not below the value {traits.marking}",
-            "give what is left at the stop, such as 2R",
-        )
+        traits = replace(traits, measured=None)
+    # What holds for the least value of a kit holds for all of them.
+    for found in complaints_of(replace(traits, value=min(value.values)), value.tolerance):
+        seen = reader.cells[found.trait].text
+        reader.find(found.trait, seen, found.problem, found.advice)

@@ -6,14 +6,17 @@ import io
 import re
 import warnings
 import zipfile
+from collections.abc import Iterator
 from datetime import date, time, timedelta
 from decimal import Decimal
+from itertools import islice
 from typing import Any
 
 from chooser.errors import SheetError
 from chooser.sheets.columns import column_headed
 from chooser.sheets.grid import (
     BLANK,
+    FEWER_COLUMNS,
     MAX_COLUMNS,
     MAX_ROWS,
     MAX_UNPACKED_BYTES,
@@ -37,7 +40,8 @@ _LEAST_HEADINGS = 2
 def read_xlsx(file: str, data: bytes) -> tuple[Grid, ...]:
     """Read the stock sheets of a workbook.
 
-    Every visible worksheet with known headings is one; others (notes, lists) are passed over.
+    Every visible worksheet with known headings is one; others (notes, lists) are passed over,
+    and the first grid notes those that might have been meant.
 
     Parameters
     ----------
@@ -53,15 +57,25 @@ def read_xlsx(file: str, data: bytes) -> tuple[Grid, ...]:
         # What the library warns of (styles, extensions) has no bearing on the cells.
         with warnings.catch_warnings():
             warnings.simplefilter("ignore")
-            grids = _worksheets(file, data)
+            grids, hidden = _worksheets(file, data)
     except SheetError:
         raise
     except Exception as error:  # noqa: BLE001 - a broken file breaks the library in any way it likes
         refuse(file, f"is damaged ({type(error).__name__})", _SAVE_AGAIN)
     if not grids:
         refuse(file, "is empty", "its first row must hold the headings kind, value, count, drawer")
-    stock = [grid for grid in grids if _headings_known(grid) >= _LEAST_HEADINGS] or grids[:1]
-    return tuple(stock) if len(stock) > 1 else (Grid(file, stock[0].rows),)
+    stock = [grid for grid in grids if _is_stock(grid.rows[0])] or grids[:1]
+    notes = tuple(
+        f"{grid.file} was passed over: its first row holds no headings of a stock sheet."
+        for grid in grids
+        if grid not in stock and _is_table(grid)
+    ) + tuple(
+        f"{name} was passed over, since it is hidden; show it in the spreadsheet program to have "
+        "it read."
+        for name in hidden
+    )
+    first = Grid(stock[0].file if len(stock) > 1 else file, stock[0].rows, notes)
+    return (first, *stock[1:])
 
 
 def _check_archive(file: str, data: bytes) -> None:
@@ -87,25 +101,31 @@ def _check_archive(file: str, data: bytes) -> None:
         )
 
 
-def _worksheets(file: str, data: bytes) -> list[Grid]:
+def _worksheets(file: str, data: bytes) -> tuple[list[Grid], list[str]]:
+    """Read the visible worksheets that are not blank; name the hidden ones with good headings."""
     from openpyxl import load_workbook
 
     book = load_workbook(io.BytesIO(data), read_only=True, data_only=False, keep_links=False)
     try:
         grids = [
-            Grid(f"{file} [{sheet.title}]", _rows(file, sheet))
+            Grid(f"{file} [{sheet.title}]", tuple(_rows(file, sheet)))
             for sheet in book.worksheets
             if sheet.sheet_state == "visible"
         ]
+        hidden = [
+            f"{file} [{sheet.title}]"
+            for sheet in book.worksheets
+            if sheet.sheet_state != "visible" and any(map(_is_stock, islice(_rows(file, sheet), 1)))
+        ]
     finally:
         book.close()
-    return [grid for grid in grids if grid.rows]
+    return [grid for grid in grids if grid.rows], hidden
 
 
-def _rows(file: str, sheet: Any) -> tuple[Row, ...]:
+def _rows(file: str, sheet: Any) -> Iterator[Row]:
+    """Give the rows that are not blank, one by one."""
     sheet.reset_dimensions()  # the declared size is only a claim
-    rows = []
-    for number, cells in enumerate(sheet.iter_rows(max_col=MAX_COLUMNS), 1):
+    for number, cells in enumerate(sheet.iter_rows(max_col=MAX_COLUMNS + 1), 1):
         if number > MAX_ROWS:
             refuse(
                 file,
@@ -113,13 +133,21 @@ def _rows(file: str, sheet: Any) -> tuple[Row, ...]:
                 "delete the blank rows below the stock, or split it into several sheets",
             )
         kept = trimmed([BLANK if cell.value is None else _cell(cell) for cell in cells])
+        if len(kept) > MAX_COLUMNS:
+            problem = f"has more than {MAX_COLUMNS} columns in {sheet.title!r}"
+            refuse(file, problem, FEWER_COLUMNS, row=number)
         if kept:
-            rows.append(Row(number, kept))
-    return tuple(rows)
+            yield Row(number, kept)
 
 
-def _headings_known(grid: Grid) -> int:
-    return sum(column_headed(cell.text) is not None for cell in grid.rows[0].cells)
+def _is_table(grid: Grid) -> bool:
+    """Tell a table from a page of text, which nobody takes for stock."""
+    return any(sum(cell != BLANK for cell in row.cells) > 1 for row in grid.rows)
+
+
+def _is_stock(row: Row) -> bool:
+    """Tell whether a row can be the headings of a stock sheet."""
+    return sum(column_headed(cell.text) is not None for cell in row.cells) >= _LEAST_HEADINGS
 
 
 def _cell(cell: Any) -> Cell:

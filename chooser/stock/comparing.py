@@ -3,15 +3,22 @@
 Conventions: a sheet states what lies in a drawer. A difference in count becomes a correction, a
 difference in the other traits amends the holding, and holdings that the sheets do not mention
 stay as they are. An empty cell says nothing: it keeps what the stock already knows.
+
+A row that matches no holding, where its drawer has exactly one unmentioned holding of the same
+kind and value (both measured or neither), is that holding with a trait corrected: else every
+slip of the pen that is mended would count the parts twice.
 """
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass, replace
 
 from chooser.errors import StockError
 from chooser.parts import Entry, Holding, Part, Sureness, identity_of
+
+CORRECTABLE = ("tolerance", "technology", "voltage", "measured", "taper", "turns")
+"""Traits that tell holdings apart, and may yet have been written down wrongly."""
 
 AMENDABLE = (
     "marking",
@@ -86,19 +93,24 @@ def plan_of(holdings: Iterable[Holding], entries: Sequence[Entry]) -> LoadPlan:
     """
     known = {identity_of(holding.part, holding.drawer): holding for holding in holdings}
     mentioned = _without_twins(entries)
-    pairs = [(known.get(identity), entry) for identity, entry in mentioned.items()]
+    corrected = _corrections(known, mentioned)
+    pairs = [
+        (known.get(identity) or corrected.get(identity), entry)
+        for identity, entry in mentioned.items()
+    ]
     _refuse_below_claims(pairs)
-    differences = [_difference(holding, entry) for holding, entry in pairs if holding is not None]
+    differences = [difference(holding, entry) for holding, entry in pairs if holding is not None]
     changed = tuple(found for found in differences if found.recounted or found.amended)
     drawers = {entry.drawer.casefold() for entry in entries}
+    met = {holding.id for holding, _ in pairs if holding is not None}
     return LoadPlan(
         new=tuple(entry for holding, entry in pairs if holding is None),
         changed=changed,
         unchanged=len(differences) - len(changed),
         unmentioned=tuple(
             holding
-            for identity, holding in known.items()
-            if identity not in mentioned
+            for holding in known.values()
+            if holding.id not in met
             and holding.drawer.casefold() in drawers
             and not _is_empty(holding)
         ),
@@ -121,6 +133,37 @@ def _without_twins(entries: Sequence[Entry]) -> dict[tuple[object, ...], Entry]:
     return keyed
 
 
+def _corrections(
+    known: Mapping[tuple[object, ...], Holding], mentioned: Mapping[tuple[object, ...], Entry]
+) -> dict[tuple[object, ...], Holding]:
+    """Find the rows that can only be a holding whose traits were corrected, by their identity."""
+    old: dict[tuple[object, ...], list[Holding]] = {}
+    for identity, holding in known.items():
+        if identity not in mentioned and not _is_empty(holding):
+            old.setdefault(_likeness(holding.part, holding.drawer), []).append(holding)
+    new: dict[tuple[object, ...], list[Entry]] = {}
+    for identity, entry in mentioned.items():
+        if identity not in known:
+            new.setdefault(_likeness(entry.part, entry.drawer), []).append(entry)
+    found = {}
+    for likeness, (entry, *more) in new.items():
+        candidates = old.get(likeness, [])
+        if more or len(candidates) != 1:
+            continue
+        (holding,) = candidates
+        own = identity_of(holding.part, holding.drawer)
+        merged = identity_of(_filled(holding.part, entry.part), holding.drawer)
+        # What the row leaves blank is kept; that must not make it a part which is there already.
+        if merged in (own, entry.identity) or not (merged in known or merged in mentioned):
+            found[entry.identity] = holding
+    return found
+
+
+def _likeness(part: Part, drawer: str) -> tuple[object, ...]:
+    """Give what a correction leaves as it is."""
+    return (drawer.casefold(), part.kind, part.value, part.measured is None)
+
+
 def _refuse_below_claims(pairs: Iterable[tuple[Holding | None, Entry]]) -> None:
     """Refuse counts that would leave less than what is put aside."""
     short = [
@@ -135,17 +178,24 @@ def _refuse_below_claims(pairs: Iterable[tuple[Holding | None, Entry]]) -> None:
         raise StockError("\n".join(short))
 
 
-def _difference(holding: Holding, entry: Entry) -> Difference:
+def difference(holding: Holding, entry: Entry) -> Difference:
+    """Tell in what an entry differs from the holding it speaks of; empty cells are filled."""
     part = _filled(holding.part, entry.part)
     amended = tuple(
-        name for name in AMENDABLE if getattr(part, name) != getattr(holding.part, name)
+        name
+        for name in (*CORRECTABLE, *AMENDABLE)
+        if getattr(part, name) != getattr(holding.part, name)
     )
     return Difference(holding, replace(entry, part=part), holding.count != entry.count, amended)
 
 
 def _filled(old: Part, new: Part) -> Part:
     """Keep what is known wherever the sheet says nothing."""
-    silent = {name: getattr(old, name) for name in AMENDABLE if getattr(new, name) in (None, "")}
+    silent = {
+        name: getattr(old, name)
+        for name in (*CORRECTABLE, *AMENDABLE)
+        if getattr(new, name) in (None, "")
+    }
     return replace(new, **silent)
 
 

@@ -15,8 +15,16 @@ from sqlalchemy.orm import Session
 
 from chooser.errors import BadRequestError, StockError
 from chooser.parts import Count, Entry, Holding, Sureness, identity_of
+from chooser.stock.comparing import difference
 from chooser.stock.models import Claim
-from chooser.stock.register import add_claims, add_holdings, add_movements, all_lines, correction
+from chooser.stock.register import (
+    add_claims,
+    add_holdings,
+    add_movements,
+    all_lines,
+    amend,
+    correction,
+)
 from chooser.stock.session import note_change, writing
 from chooser.stock.snapshot import Line
 
@@ -28,16 +36,22 @@ class Added:
     Attributes
     ----------
     holding : the holding as it is now. created : True where it was not in the stock before.
-    change : number of the change.
+    change : number of the change. before : the holding as it was, None where it was created.
+    amended : names of the traits that were said now and were another or none before.
     """
 
     holding: Holding
     created: bool
     change: int
+    before: Holding | None = None
+    amended: tuple[str, ...] = ()
 
 
 def add(path: Path, entry: Entry, what: str = "add") -> Added:
     """Put parts into a drawer: onto the holding that is the same part, else as a new one.
+
+    Traits that are said now amend the holding, as in loading; what is not said is kept, and so
+    is the marking, which is that of the parts that lie there already.
 
     Parameters
     ----------
@@ -55,14 +69,18 @@ def add(path: Path, entry: Entry, what: str = "add") -> Added:
             for line in all_lines(session)
         }
         found = known.get(entry.identity)
+        amended: tuple[str, ...] = ()
         if found is None:
             (number,) = add_holdings(session, change, [entry])
         else:
             number = found.id
             sureness = _vaguer(found.count, entry.count)
             add_movements(session, change, {number: (entry.count.number, sureness)})
+            said = difference(found, entry)
+            amended = tuple(name for name in said.amended if name != "marking")
+            amend(session, number, said.entry.part, amended)
         holding = _lines(session, [number])[number].holding
-    return Added(holding, found is None, change)
+    return Added(holding, found is None, change, found, amended)
 
 
 def correct(path: Path, holding: int, count: Count, what: str = "count") -> int:

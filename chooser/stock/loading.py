@@ -6,13 +6,11 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from pathlib import Path
 
-from sqlalchemy import update
 from sqlalchemy.orm import Session
 
 from chooser.parts import Entry
-from chooser.stock import models
 from chooser.stock.comparing import LoadPlan, plan_of
-from chooser.stock.register import add_holdings, add_movements, all_lines, correction
+from chooser.stock.register import add_holdings, add_movements, all_lines, amend, correction
 from chooser.stock.revision import State, state_of
 from chooser.stock.session import note_change, writing
 from chooser.stock.snapshot import read_stock
@@ -74,7 +72,4 @@ def _write(session: Session, change: int, plan: LoadPlan, balances: dict[int, in
     }
     add_movements(session, change, moves)
     for found in plan.amended:
-        traits = {name: getattr(found.entry.part, name) for name in found.amended}
-        session.execute(
-            update(models.Holding).where(models.Holding.id == found.holding.id).values(traits)
-        )
+        amend(session, found.holding.id, found.entry.part, found.amended)

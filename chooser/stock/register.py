@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Collection, Mapping, Sequence
 from typing import Any
 
-from sqlalchemy import Table, func, insert, select
+from sqlalchemy import Table, func, insert, select, update
 from sqlalchemy.orm import Session
 
-from chooser.parts import Count, Entry, Sureness
+from chooser.parts import Count, Entry, Part, Sureness
 from chooser.stock import models
 from chooser.stock.snapshot import SNAPSHOT_SQL, Line, lines_of, traits_of
 
@@ -49,6 +49,16 @@ def add_holdings(session: Session, change: int, entries: Sequence[Entry]) -> lis
     }
     add_movements(session, change, moves)
     return numbers
+
+
+def amend(session: Session, holding: int, part: Part, names: Collection[str]) -> None:
+    """Write the named traits (fields of `Part`) of a holding as the part has them."""
+    if not names:
+        return
+    columns = {"tolerance": ("tolerance_minus", "tolerance_plus")}
+    wanted = {column for name in names for column in columns.get(name, (name,))}
+    values = {column: value for column, value in traits_of(part).items() if column in wanted}
+    session.execute(update(models.Holding).where(models.Holding.id == holding).values(values))
 
 
 def add_movements(session: Session, change: int, moves: Mapping[int, tuple[int, Sureness]]) -> None:

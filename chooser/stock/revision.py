@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+import os
 import sqlite3
+import stat
 from enum import Enum
 from pathlib import Path
 
@@ -52,15 +54,35 @@ def revision_of(path: Path) -> str | None:
     ------
     StockError : as `state_of`.
     """
-    if path.is_dir():
+    found = look_at(path)
+    if found is not None and stat.S_ISDIR(found.st_mode):
         raise StockError(f"{path} is a folder; name the database file in it, such as stock.db.")
-    if not path.exists() or path.stat().st_size == 0:
+    if found is None or found.st_size == 0:
         return None
     with looking(path) as connection:
         (tables,) = connection.execute("SELECT count(*) FROM sqlite_master").fetchone()
         if tables == 0:
             return None
         return _stamped(connection, path)
+
+
+def look_at(path: Path) -> os.stat_result | None:
+    """Tell what lies at a path, None where nothing does.
+
+    Raises
+    ------
+    StockError : it cannot be told: a name too long, a folder that may not be entered.
+    """
+    try:
+        return path.stat()
+    except (FileNotFoundError, NotADirectoryError):
+        return None
+    except (OSError, ValueError) as error:
+        reason = (error.strerror if isinstance(error, OSError) else None) or str(error)
+        raise StockError(
+            f"{path} cannot be reached ({reason.lower()}); look at its name and at the rights of "
+            "its folders, or name another file."
+        ) from None
 
 
 def _stamped(connection: sqlite3.Connection, path: Path) -> str:

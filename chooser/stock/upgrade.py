@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 import logging
+import os
 import sqlite3
 import sys
-from contextlib import closing
+from contextlib import closing, suppress
 from dataclasses import dataclass
 from datetime import UTC, datetime
 from pathlib import Path
@@ -15,7 +16,7 @@ import chooser
 from chooser.errors import StockError
 from chooser.stock.connection import connect, looking
 from chooser.stock.faults import no_stock_yet, stock_error
-from chooser.stock.revision import HEAD, State, newer_error, revision_of, state_of
+from chooser.stock.revision import HEAD, State, look_at, newer_error, revision_of, state_of
 
 if TYPE_CHECKING:
     from alembic.config import Config
@@ -112,16 +113,32 @@ def backup(path: Path, to: Path | None = None) -> Path:
     if state_of(path) is State.MISSING:
         raise no_stock_yet(path)
     target = to or _copy_name(path, "backup")
-    if target.exists():
+    if look_at(target) is not None:
         raise StockError(f"{target} exists already; name another file for the copy.")
+    # Under its own name only once it is whole: a killed copy must not pass for a good one.
+    part = target.with_name(f".copy-{os.getpid()}.part")
     with looking(path) as source:
         try:
-            with closing(connect(target, "rwc")) as copy:
+            part.unlink(missing_ok=True)
+            with closing(connect(part, "rwc")) as copy:
                 source.backup(copy)
+            part.replace(target)
         except sqlite3.Error as error:
-            target.unlink(missing_ok=True)  # half a copy is worse than none
             raise stock_error(error, target) from error
+        except OSError as error:
+            raise StockError(
+                f"The copy {target} cannot be written ({(error.strerror or str(error)).lower()}); "
+                "name another file for it."
+            ) from error
+        finally:
+            _clear(part)
     return target
+
+
+def _clear(part: Path) -> None:
+    """Take an unfinished copy away; where that fails, the reason was told already."""
+    with suppress(OSError):
+        part.unlink(missing_ok=True)
 
 
 def migrations_folder() -> Path:

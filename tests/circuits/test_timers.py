@@ -1,6 +1,7 @@
 """The table of timers against its own promises, and a user's file against bad input."""
 
 import dataclasses
+import os
 from math import inf
 
 import pytest
@@ -234,10 +235,44 @@ def test_unreadable_files_are_refused(tmp_path):
     binary.write_bytes(b"\xff\xfe\x00[x]")
     with pytest.raises(BadRequestError, match="is not UTF-8 text"):
         timer_names(binary)
-    with pytest.raises(BadRequestError, match=r"none\.toml cannot be read"):
+    with pytest.raises(BadRequestError, match=r"There is no file .*none\.toml; check its name"):
         timer_names(tmp_path / "none.toml")
-    with pytest.raises(BadRequestError, match="cannot be read"):
+    with pytest.raises(BadRequestError, match="is not a plain file"):
         timer_names(tmp_path)
+    with pytest.raises(BadRequestError, match="cannot be read"):
+        timer_names(tmp_path / ("x" * 300))
+    with pytest.raises(BadRequestError, match="cannot be read"):
+        timer_names(tmp_path / "a\0b")
+
+
+def test_a_pipe_is_not_waited_for(tmp_path):
+    os.mkfifo(tmp_path / "pipe.toml")
+    with pytest.raises(BadRequestError, match="is not a plain file"):
+        timer_names(tmp_path / "pipe.toml")
+
+
+@pytest.mark.parametrize(("size", "fits"), [(2**20, True), (2**20 + 1, False)])
+def test_a_file_of_more_than_a_mebibyte_is_not_read(tmp_path, size, fits):
+    file = tmp_path / "long.toml"
+    file.write_bytes(b"#" * size)
+    if fits:
+        assert timer_names(file) == timer_names()
+    else:
+        with pytest.raises(BadRequestError, match="larger than 1 MiB"):
+            timer_names(file)
+
+
+@pytest.mark.parametrize(
+    ("name", "said"),
+    [
+        ("foo", "'foo' is no timer that is known. Known are ideal, bipolar"),
+        ("NE556", "'NE556' is no timer that is known; did you mean NE555? Known are ideal"),
+    ],
+)
+def test_an_unknown_timer_is_refused_in_whole_sentences(name, said):
+    with pytest.raises(UnknownNameError) as refused:
+        timer_named(name)
+    assert str(refused.value).startswith(said)
 
 
 @given(st.text(max_size=200))

@@ -56,9 +56,11 @@ def test_a_part_in_words(text, part):
         ("10k trimmer capacitor", ["trimmer and a capacitor"]),
         ("10k bakelite", ["'bakelite'", "resistor"]),
         ("4n7 polypropilene", ["'polypropilene'", "did you mean polypropylene"]),
-        ("10k linear", ["A resistor has no taper"]),
+        ("10k linear", ["a resistor, which has no taper"]),
         ("1m", ["'1m'", "1M or R001"]),
         ("10kk", ["'10kk'"]),
+        ("473K 5% polyester", ["'5%'", "the letter of the marking 473K"]),
+        ("100n 1/4W", ["'1/4W'", "a capacitor, which has no power"]),
     ],
 )
 def test_what_is_not_clear_is_refused_with_what_to_do(text, words):
@@ -78,10 +80,13 @@ def test_options_win_over_words_and_a_kind_said_decides():
 @pytest.mark.parametrize(
     ("text", "said", "message"),
     [
-        ("10k", {"measured": "9.9"}, "far from the 10k"),
-        ("10k", {"leakage": "3uA"}, "A resistor has no leakage"),
-        ("100n", {"turns": "10"}, "A capacitor has no turns"),
+        ("10k", {"measured": "9.9"}, "far from the value 10k"),
+        ("10k", {"leakage": "3uA"}, "a resistor, which has no leakage"),
+        ("100n", {"turns": "10"}, "a capacitor, which has no turns"),
         ("10k", {"voltage": "high"}, "'high'"),
+        ("10k pot", {"end_resistance": "20k"}, "'20k' is not below the value 10k"),
+        ("10k", {"note": "\x1b[31mred"}, "cannot be printed"),
+        ("10k", {"note": "x" * 501}, "501 characters"),
     ],
 )
 def test_options_that_cannot_be_are_refused(text, said, message):
@@ -93,8 +98,20 @@ def test_an_entry_has_a_drawer_and_a_count():
     entry = read_entry("10k", None, {}, " top   shelf ", "~50")
     expected = Part(R, 10e3, "10k")
     assert entry == Entry(expected, "top shelf", Count(50, Sureness.ROUGH), "the command line")
-    with pytest.raises(ChooserError, match="no name"):
-        read_entry("10k", None, {}, "  ", "5")
+
+
+@pytest.mark.parametrize(
+    ("drawer", "words"),
+    [("  ", "no name"), ("A\x1b[2J", "cannot be printed"), ("x" * 61, "61 characters")],
+)
+def test_a_drawer_has_a_name_that_can_be_printed(drawer, words):
+    with pytest.raises(ChooserError, match=words):
+        read_entry("10k", None, {}, drawer, "5")
+
+
+def test_10k_said_to_be_a_capacitor_is_not_taken_for_ten_picofarad():
+    with pytest.raises(ChooserError, match="10K or 10p"):
+        read_part("10k", Kind.CAPACITOR)
 
 
 @given(st.text() | st.text("0123456789.,kMRnupFVW% +-/±ohm"))

@@ -46,6 +46,39 @@ def test_wide_and_combining_characters_take_their_columns():
     assert lines[1:] == ["抽斗    x", "e\u0301       x", "drawer  x"]
 
 
+LONG = [["A1", "10k 1% metal-film, from the old lamp board of the club", "20"]]
+
+
+def test_one_column_may_go_on_below_itself():
+    lines = table_lines(("drawer", "part", "count"), LONG, ("count",), 45, wrapping="part")
+    assert lines == [
+        "drawer  part                            count",
+        "A1      10k 1% metal-film, from the        20",
+        "        old lamp board of the club",
+    ]
+
+
+@pytest.mark.parametrize(("width", "folds"), [(39, False), (38, True)])
+def test_a_column_too_narrow_to_read_folds_after_all(width, folds):
+    lines = table_lines(("drawer", "part", "count"), LONG, width=width, wrapping="part")
+    assert (lines[0].split() != ["drawer", "part", "count"]) == folds
+
+
+def test_wide_characters_wrap_by_their_columns():
+    rows = [["抽斗" * 20, "1"]]
+    lines = table_lines(("part", "count"), rows, width=40, wrapping="part")
+    assert "".join(line.split()[0] for line in lines[1:]) == "抽斗" * 20
+    # East Asian wide signs take two columns (Unicode, UAX 11).
+    assert all(len(line.split()[0]) * 2 <= 33 for line in lines[1:])
+
+
+def test_a_line_drives_no_terminal(capsys):
+    print_line("from \x1b[31mA\x1b]0;title\x07, 10 Ω")
+    assert capsys.readouterr().out == "from ?[31mA?]0;title?, 10 Ω\n".replace(
+        "?", "\N{REPLACEMENT CHARACTER}"
+    )
+
+
 @given(st.text())
 def test_any_text_stays_on_its_line_and_drives_no_terminal(text):
     (_, line) = table_lines(("note",), [[text]])

@@ -171,7 +171,8 @@ def test_the_number_of_combinations_is_that_of_the_space(rank, seed):
     searched = find_fits(holdings, request).searched
     assert searched.combinations == expected
     assert searched.complete is (rank is not Rank.BALANCED)
-    assert searched.limit == ""
+    assert ("8 nearest" in searched.limit) is (rank is Rank.BALANCED)
+    assert bool(searched.limit) is not searched.complete
     assert searched.seconds > 0
 
 

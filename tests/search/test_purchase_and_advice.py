@@ -9,8 +9,7 @@ from stocks import asked, capacitor, counted, resistor
 
 from chooser.circuits.monostable import limits
 from chooser.parts import Kind, Part
-from chooser.preferred import is_preferred
-from chooser.search.advice import TOO_LONG, TOO_SHORT
+from chooser.preferred import nearest
 from chooser.search.find import find_fits
 from chooser.search.house_rules import usable_parts
 from chooser.search.purchase import one_purchase
@@ -68,14 +67,47 @@ def test_pots_are_no_timing_resistors():
     assert "no resistors" in advice([pot, C], 1e-2 * LN3)[0]
 
 
-def test_an_interval_too_long_for_every_capacitor():
-    said = advice([resistor(1, 1e6), capacitor(11, 1e-6)], 3600.0, "bipolar")
-    assert said[0] == TOO_LONG
+@pytest.mark.parametrize(
+    ("timer", "held", "ways", "not_said"),
+    [
+        ("bipolar", capacitor(11, 1e-6), ["larger capacitor", "CMOS", "counter"], "film"),
+        ("TLC555", capacitor(11, 1e-6), ["larger capacitor", "counter"], "CMOS"),
+        (
+            "TLC555",
+            capacitor(11, 1e-3, technology="electrolytic", voltage=16.0),
+            ["leaks less", "counter"],
+            "larger",
+        ),
+    ],
+)
+def test_an_interval_too_long_for_every_capacitor_names_the_ways_that_help(
+    timer, held, ways, not_said
+):
+    said = advice([resistor(1, 1e6), held], 36000.0, timer)[0]
+    assert "drifts or never ends" in said
+    assert all(way in said for way in ways)
+    assert not_said not in said
 
 
 def test_an_interval_too_short_for_every_capacitor():
-    said = advice([resistor(1, 1e4), capacitor(11, 1e-4)], 1e-4, "bipolar")
-    assert said[0] == TOO_SHORT
+    assert (
+        "smaller capacitor" in advice([resistor(1, 1e4), capacitor(11, 1e-4)], 1e-4, "bipolar")[0]
+    )
+    assert "faster timer" in advice([resistor(1, 1e4), capacitor(11, 1e-9)], 1e-8, "bipolar")[0]
+
+
+def test_a_purchase_is_for_every_board():
+    holdings = [resistor(1, 1e4, 9), capacitor(11, 1e-6, 30)]
+    assert "30 of 910k" in advice(holdings, 1.0, boards=30)[0]
+
+
+def test_where_the_boards_are_too_many_the_shortage_is_named():
+    """Ten 10k and ten 100n make ten boards of 1.0986 ms; the eleventh is short of one of each."""
+    holdings = [resistor(1, 1e4, 10, drawer="A3"), capacitor(11, 1e-7, 10, drawer="F1")]
+    said = " ".join(advice(holdings, 1.1e-3, boards=11))
+    assert "enough for 10 boards" in said
+    assert "1 x 10k (drawer A3)" in said
+    assert "1 x 100n (drawer F1)" in said
 
 
 @pytest.mark.parametrize("rank", list(Rank))
@@ -151,7 +183,7 @@ def test_what_is_bought_really_gets_into_the_band(timer, target, within):
     found = bought(holdings, target, timer, **options)
     if found is None:
         return
-    assert is_preferred(found.series, found.bought.value)
+    assert nearest(found.series, found.bought.value) == found.bought.value
     number = 99
     new = type(R)(number, found.bought, "new", counted(1))
     fits = find_fits([*holdings, new], asked(target, timer, rank=Rank.ERROR, **options)).fits

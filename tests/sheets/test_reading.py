@@ -33,6 +33,20 @@ def test_files_and_folders_may_be_mixed_and_a_file_is_read_once(tmp_path):
     assert [entry.part.marking for entry in read_sheets(paths)] == ["2k", "1k"]
 
 
+def test_rows_pass_through_what_shows_how_far_it_is(tmp_path):
+    path = tmp_path / "a.csv"
+    path.write_text(_ROW.format("1k") + "resistor,2k,5,A4\n")
+    seen = []
+
+    def through(rows):
+        for row in rows:
+            seen.append((len(rows), row.number))
+            yield row
+
+    assert len(read_sheets([path], through=through)) == 2
+    assert seen == [(2, 2), (2, 3)]
+
+
 def test_nothing_named_is_nothing_read():
     assert read_sheets([]) == ()
 

@@ -117,12 +117,42 @@ def test_every_visible_stock_sheet_of_a_workbook_is_read(tmp_path, findings):
     hidden.append(["capacitor", "1n", 5, "X"])
     hidden.sheet_state = "hidden"
     path = _saved(book, tmp_path / "club.xlsx")
-    entries = read_sheets([path])
+    notes = []
+    entries = read_sheets([path], notes)
+    # The page of text is no table; the hidden one might have been meant.
+    (note,) = notes
+    assert note.startswith(f"{path} [Lists] was passed over, since it is hidden; ")
     assert [entry.drawer for entry in entries] == ["F1", "C1"]
     assert entries[1].place == f"{path} [Chips] row 2"
     book["Chips"]["C2"] = -5
     (finding,) = findings(_saved(book, path))
     assert (finding.file, finding.row) == (f"{path} [Chips]", 2)
+
+
+def test_a_table_with_other_headings_beside_the_stock_is_told(tmp_path):
+    book = openpyxl.Workbook()
+    book.active.append(_HEAD)
+    book.active.append(["resistor", "1k", 1, "A1"])
+    wanted = book.create_sheet("Wanted")
+    wanted.append(["Was fehlt", "Wert", "Anzahl"])
+    wanted.append(["resistor", "2k", 1])
+    private = book.create_sheet("Private")
+    private.append(["name", "telephone"])
+    private.sheet_state = "veryHidden"
+    path = _saved(book, tmp_path / "club.xlsx")
+    notes = []
+    assert len(read_sheets([path], notes)) == 1
+    assert notes == [
+        f"{path} [Wanted] was passed over: its first row holds no headings of a stock sheet."
+    ]
+
+
+def test_a_tiny_number_for_a_capacitor_gets_sensible_readings(tmp_path, the_finding):
+    book = openpyxl.Workbook()
+    book.active.append(_HEAD)
+    book.active.append(["capacitor", 1e-7, 1, "C1"])
+    finding = the_finding(_saved(book, tmp_path / "tiny.xlsx"))
+    assert (finding.seen, finding.advice) == ("0.0000001", "write 100n")
 
 
 def test_a_cell_beyond_the_headings_is_found(the_finding):
@@ -217,3 +247,10 @@ def test_a_row_as_wide_as_allowed_is_looked_at_to_its_end(the_finding):
         [_HEAD, ["resistor", "1k", 1, "A1", *[None] * (MAX_COLUMNS - 5), "stray"]]
     )
     assert finding.seen == "stray"
+
+
+def test_more_columns_than_allowed_are_refused_and_not_cut_off(the_finding):
+    finding = the_finding(
+        [_HEAD, ["resistor", "1k", 1, "A1", *[None] * (MAX_COLUMNS - 4), "beyond"]]
+    )
+    assert (finding.row, finding.problem) == (2, "has more than 256 columns in 'Sheet'")

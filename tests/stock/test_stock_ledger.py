@@ -23,6 +23,21 @@ def test_adding_goes_onto_the_same_part_or_makes_a_new_holding(db, say_entry):
     assert [holding.id for holding in read_stock(db)] == [1, 2]
 
 
+def test_adding_amends_what_is_said_now_and_keeps_the_rest(db, say_entry):
+    ledger.add(db, say_entry(note="old bag", price=1.5, meter=0.01, marking="10k"))
+    said = {"note": "new bag", "power": 0.25, "leakage": 3e-6, "meter": 0.005, "marking": "10000"}
+    added = ledger.add(db, say_entry(count=2, **said))
+    assert set(added.amended) == {"note", "power", "leakage", "meter"}
+    assert added.before.part.note == "old bag"
+    (holding,) = read_stock(db)
+    assert added.holding == holding
+    assert holding.count == Count(7)
+    part = holding.part
+    assert (part.note, part.power, part.leakage, part.meter) == ("new bag", 0.25, 3e-6, 0.005)
+    assert (part.price, part.marking) == (1.5, "10k")
+    assert ledger.add(db, say_entry(count=1)).amended == ()
+
+
 @pytest.mark.parametrize(
     ("before", "more", "after"),
     [

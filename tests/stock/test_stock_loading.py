@@ -8,7 +8,7 @@ from dataclasses import replace
 import pytest
 
 from chooser.errors import StockError
-from chooser.parts import Count, Kind, Sureness, Tolerance
+from chooser.parts import Count, Kind, Sureness, Taper, Tolerance
 from chooser.stock import ledger, loading
 from chooser.stock.snapshot import read_stock
 
@@ -67,10 +67,6 @@ def test_traits_are_amended_and_an_empty_cell_keeps_what_is_known(db, say_entry)
     [
         {"value": 11e3},
         {"drawer": "A2"},
-        {"tolerance": Tolerance(0.01, 0.01)},
-        {"tolerance": None},
-        {"technology": "metal-film"},
-        {"voltage": 200.0},
         {"measured": 9.97e3},
         {"kind": Kind.POT},
     ],
@@ -116,9 +112,101 @@ def test_a_count_below_what_is_claimed_is_refused_and_nothing_is_loaded(db, say_
 
 def test_what_the_sheet_leaves_out_stays_and_is_told(db, say_entry):
     loading.apply(db, [say_entry(), say_entry(22e3), say_entry(1e3, drawer="B1")])
-    report = loading.apply(db, [say_entry(tolerance=Tolerance(0.01, 0.01))])
+    report = loading.apply(db, [say_entry(11e3, tolerance=Tolerance(0.01, 0.01))])
     assert [holding.id for holding in report.plan.unmentioned] == [1, 2]
     assert len(read_stock(db)) == 4
+
+
+@pytest.mark.parametrize(
+    "correction",
+    [
+        {"tolerance": Tolerance(0.01, 0.01)},
+        {"technology": "metal-film"},
+        {"voltage": 200.0},
+        {"turns": 10.0},
+        {"taper": Taper.LOG},
+    ],
+    ids=str,
+)
+def test_a_corrected_trait_amends_the_only_holding_it_can_mean(db, say_entry, correction):
+    loading.apply(db, [say_entry(count=20, note="kept")])
+    ledger.claim(db, {1: 3}, "horn")
+    row = say_entry(count=18, **correction)
+    (found,) = loading.compare(db, [row]).changed
+    assert (found.amended, found.recounted) == (tuple(correction), True)
+    assert loading.apply(db, [row]).plan.new == ()
+    (holding,) = read_stock(db)
+    for name, value in correction.items():
+        assert getattr(holding.part, name) == value
+    assert (holding.id, holding.count, holding.claimed) == (1, Count(18), 3)
+    assert holding.part.note == "kept"
+    assert [row[3] for row in rows_of(db)["movements"]] == [20, -2]  # its history goes on
+    assert loading.apply(db, [row]).change is None
+
+
+def test_a_corrected_measurement_amends_the_measured_piece_and_no_other(db, say_entry):
+    loading.apply(db, [say_entry(count=5), say_entry(count=1, measured=9.97e3)])
+    report = loading.apply(db, [say_entry(count=5), say_entry(count=1, measured=9.79e3)])
+    assert [found.amended for found in report.plan.changed] == [("measured",)]
+    assert [holding.part.measured for holding in read_stock(db)] == [None, 9.79e3]
+
+
+def test_a_blank_trait_keeps_what_is_known_of_the_only_holding(db, say_entry):
+    loading.apply(db, [say_entry(technology="carbon-film")])
+    row = say_entry(tolerance=None, technology="metal-film")
+    (found,) = loading.apply(db, [row]).plan.changed
+    assert found.amended == ("technology",)
+    (holding,) = read_stock(db)
+    assert holding.part.tolerance == Tolerance(0.05, 0.05)
+
+
+ONE, TWO = Tolerance(0.01, 0.01), Tolerance(0.02, 0.02)
+
+
+@pytest.mark.parametrize(
+    ("stock", "rows", "new"),
+    [
+        # Two old holdings it may mean; two rows that may mean it; another drawer; an empty one;
+        # and a row whose old self is still there.
+        ([{}, {"tolerance": TWO}], [{"tolerance": ONE}], 1),
+        ([{}], [{"tolerance": ONE}, {"tolerance": TWO}], 2),
+        ([{"drawer": "B1"}], [{"tolerance": ONE}], 1),
+        ([{"count": 0}], [{"tolerance": ONE}], 1),
+        ([{}], [{}, {"tolerance": ONE}], 1),
+    ],
+)
+def test_where_more_than_one_thing_may_be_meant_it_is_a_new_holding(
+    db, say_entry, stock, rows, new
+):
+    loading.apply(db, [say_entry(**each) for each in stock])
+    plan = loading.compare(db, [say_entry(**each) for each in rows])
+    assert (len(plan.new), plan.amended) == (new, ())
+
+
+def test_a_correction_never_makes_two_holdings_of_one_part(db, say_entry):
+    carbon = {"technology": "carbon-film"}
+    loading.apply(db, [say_entry(**carbon), say_entry(tolerance=ONE, technology="metal-film")])
+    # Blank in its tolerance, the second row could only become what the first one says already.
+    rows = [say_entry(technology="metal-film"), say_entry(tolerance=None, technology="metal-film")]
+    loading.apply(db, rows)
+    stock = read_stock(db)
+    assert len({(each.part.tolerance, each.part.technology) for each in stock}) == len(stock)
+
+
+def test_a_count_below_the_claims_of_the_corrected_holding_is_refused(db, say_entry):
+    loading.apply(db, [say_entry(count=5)])
+    ledger.claim(db, {1: 3}, "flasher")
+    with pytest.raises(StockError, match="3 of holding 1 are claimed"):
+        loading.apply(db, [say_entry(count=2, tolerance=ONE)])
+
+
+def test_the_way_out_that_is_told_works(db, say_entry):
+    loading.apply(db, [say_entry(), say_entry(tolerance=TWO)])
+    report = loading.apply(db, [say_entry(tolerance=ONE)])
+    assert [holding.id for holding in report.plan.unmentioned] == [1, 2]
+    loading.apply(db, [say_entry(count=0), say_entry(count=0, tolerance=TWO)])
+    assert loading.apply(db, [say_entry(tolerance=ONE)]).plan.unmentioned == ()
+    assert sum(holding.count.number for holding in read_stock(db)) == 5
 
 
 def test_a_preview_changes_nothing_and_makes_no_file(db, say_entry):

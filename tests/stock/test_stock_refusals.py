@@ -37,6 +37,11 @@ loading.compare(db, [])
 if os.geteuid() == 0:
     os.setgid(65534); os.setuid(65534)
 print(len(read_stock(db)))
+shut = db.parent / "shut" / "stock.db"
+try:
+    read_stock(shut)
+except StockError as error:
+    print(error)
 for path in (db, db.parent / "new.db", db.parent / "new folder" / "stock.db"):
     try:
         loading.apply(path, [Entry(Part(Kind.RESISTOR, 1e3), "Z9", Count(1), "row 2")])
@@ -51,6 +56,29 @@ def test_the_stock_is_where_the_user_says_else_in_the_user_data_folder(monkeypat
     assert database_path("~/my.db") == tmp_path / "my.db"
     assert database_path(None).name == "stock.db"
     assert "chooser" in database_path(None).parts
+
+
+@pytest.mark.parametrize(
+    ("name", "words"),
+    [
+        ("~nosuchuser/x.db", "home folder, ~nosuchuser"),
+        ("a\0b.db", "is no name of a file"),
+    ],
+)
+def test_a_name_no_file_can_have_is_refused(name, words):
+    with pytest.raises(StockError, match=words):
+        database_path(name)
+
+
+@pytest.mark.parametrize("name", ["x" * 300, "a\0b"], ids=["too long", "NUL"])
+def test_a_path_that_cannot_be_reached_is_told(db, say_entry, name):
+    path = db.with_name(name)
+    for act in (read_stock, lambda path: loading.apply(path, [say_entry()])):
+        with pytest.raises(StockError, match="cannot be reached"):
+            act(path)
+    loading.apply(db, [say_entry()])
+    with pytest.raises(StockError, match="cannot be reached"):
+        upgrade.backup(db, path)
 
 
 def test_a_missing_stock_is_told_with_the_two_ways_on(db):
@@ -136,6 +164,25 @@ def test_a_disk_too_full_for_a_copy_leaves_no_half_copy(db, say_entry, monkeypat
     with pytest.raises(StockError, match="no room left on the disk"):
         upgrade.backup(db, copy)
     assert not copy.exists()
+    assert [each.name for each in db.parent.iterdir()] == [db.name]
+
+
+def test_a_copy_has_its_name_only_once_it_is_whole(db, say_entry, monkeypatch):
+    loading.apply(db, [say_entry()])
+    copy = db.with_name("copy.db")
+
+    def full(_self, _target):
+        assert not copy.exists()
+        raise OSError(28, "No space left on device")
+
+    monkeypatch.setattr(Path, "replace", full)
+    with pytest.raises(StockError, match=r"copy\.db cannot be written \(no space left"):
+        upgrade.backup(db, copy)
+    assert [each.name for each in db.parent.iterdir()] == [db.name]
+    monkeypatch.undo()
+    upgrade.backup(db, copy)
+    assert read_stock(copy) == read_stock(db)
+    assert sorted(each.name for each in db.parent.iterdir()) == ["copy.db", "stock.db"]
 
 
 def test_a_file_that_may_not_grow_leaves_the_stock_as_it_was(db, say_entry):
@@ -173,6 +220,7 @@ def test_a_read_only_stock_can_be_read_and_refuses_to_be_written(say_entry):
         folder = Path(name)
         db = folder / "stock.db"
         loading.apply(db, [say_entry()])
+        (folder / "shut").mkdir(mode=0o600)  # without the right to enter
         try:
             done = subprocess.run(
                 [sys.executable, "-B", "-c", AS_A_GUEST, str(db)],
@@ -185,6 +233,7 @@ def test_a_read_only_stock_can_be_read_and_refuses_to_be_written(say_entry):
     lines = done.stdout.splitlines()
     assert not done.stderr
     assert lines[0] == "1"
+    assert "shut/stock.db cannot be reached (permission denied)" in lines.pop(1)
     assert lines[1].endswith("read-only; make it writable, or work on a copy with --db.")
     assert "new.db cannot be opened or created; check that its folder exists" in lines[2]
     assert "new folder for the stock cannot be made (Permission denied)" in lines[3]

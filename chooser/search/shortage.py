@@ -1,0 +1,62 @@
+"""How many boards the stock can make, where it cannot make all of them, and what runs out."""
+
+from __future__ import annotations
+
+from collections import Counter
+from collections.abc import Callable
+from dataclasses import replace
+
+from chooser.networks import members
+from chooser.parts import Holding, Kind
+from chooser.quantities import format_capacitance, format_resistance
+from chooser.search.request import Fit, Request
+from chooser.search.terms import Rank
+
+Search = Callable[[Request], Fit | None]
+"""Finds the first fit of a request, if any."""
+
+
+def shortage(request: Request, search: Search) -> tuple[str, ...]:
+    """Say for how many boards the stock is enough, and what is short for the rest.
+
+    Parameters
+    ----------
+    request : what was asked, for more than one board. search : asked again for fewer boards.
+
+    Returns
+    -------
+    One sentence, or none where not even one board can be built inside the band.
+    """
+    enough, best = 0, None
+    too_many = request.boards
+    while too_many - enough > 1:
+        boards = (enough + too_many) // 2
+        fit = search(replace(request, boards=boards, rank=Rank.BALANCED, top=1))
+        if fit is not None and fit.in_band:
+            enough, best = boards, fit
+        else:
+            too_many = boards
+    if best is None:
+        return ()
+    noun = "board" if enough == 1 else "boards"
+    short = _short_of(best, request.boards)
+    said = f"The stock is enough for {enough} {noun}; the simplest way for all {request.boards} is "
+    return (f"{said}short of {short}.",)
+
+
+def _short_of(fit: Fit, boards: int) -> str:
+    """Name what so many boards need beyond what is free."""
+    holdings = [*members(fit.resistor), *members(fit.capacitor)]
+    taken = Counter(holding.id for holding in holdings)
+    by_id = {holding.id: holding for holding in holdings}
+    short = [
+        f"{pieces * boards - free} x {_name(by_id[number])}"
+        for number, pieces in taken.items()
+        if (free := by_id[number].free) is not None and free < pieces * boards
+    ]
+    return " and ".join(short)
+
+
+def _name(holding: Holding) -> str:
+    write = format_capacitance if holding.part.kind is Kind.CAPACITOR else format_resistance
+    return f"{write(holding.part.effective)} (drawer {holding.drawer})"
