@@ -17,7 +17,6 @@ from fractions import Fraction
 from functools import cache
 from math import floor, isfinite, log10
 
-from chooser.decimals import clean
 from chooser.errors import (
     AmbiguousValueError,
     BadRequestError,
@@ -25,7 +24,8 @@ from chooser.errors import (
     UnreadableValueError,
 )
 from chooser.parts import Kind
-from chooser.ranges import Span, parse_capacitance_range, parse_resistance_range
+from chooser.quantities.decimals import clean
+from chooser.quantities.ranges import Span, parse_capacitance_range, parse_resistance_range
 
 SERIES_NAMES = ("E3", "E6", "E12", "E24", "E48", "E96", "E192")
 

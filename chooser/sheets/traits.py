@@ -7,7 +7,6 @@ from dataclasses import dataclass
 from difflib import get_close_matches
 
 from chooser.errors import AmbiguousValueError, UnreadableValueError
-from chooser.markings import parse_capacitor_marking
 from chooser.parts import Kind, Taper, Tolerance
 from chooser.preferred import is_kit, parse_kit
 from chooser.quantities import (
@@ -15,6 +14,7 @@ from chooser.quantities import (
     parse_percent,
     parse_resistance,
 )
+from chooser.quantities.markings import parse_capacitor_marking
 from chooser.technologies import find_technology, nearest_technologies, technology_names
 
 _KINDS = {

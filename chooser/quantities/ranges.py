@@ -12,10 +12,10 @@ import re
 from collections.abc import Callable
 from dataclasses import dataclass
 
-from chooser.decimals import clean
 from chooser.errors import AmbiguousValueError, UnreadableValueError
-from chooser.notation import read
-from chooser.units import CAPACITANCE, RESISTANCE
+from chooser.quantities.decimals import clean
+from chooser.quantities.notation import read
+from chooser.quantities.units import CAPACITANCE, RESISTANCE
 
 _DIVIDER = re.compile(
     r" ?(?<!\.)\.\.(?!\.) ?| ?… ?| to |(?<=[0-9A-Za-z])(?<![0-9][eE]) ?-(?= ?[0-9])", re.IGNORECASE

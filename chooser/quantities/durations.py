@@ -12,8 +12,16 @@ import re
 from fractions import Fraction
 from math import isfinite
 
-from chooser.decimals import NUMBER, around_point, clean, doubtful, exact_digits, plain, read_number
 from chooser.errors import UnreadableValueError
+from chooser.quantities.decimals import (
+    NUMBER,
+    around_point,
+    clean,
+    doubtful,
+    exact_digits,
+    plain,
+    read_number,
+)
 
 _EXAMPLE = "90s, 1.5min, 2h, 12ms or 1:30"
 _IN_SECONDS = 120

@@ -11,9 +11,9 @@ import re
 from collections.abc import Callable, Mapping
 from types import MappingProxyType
 
-from chooser.decimals import NUMBER, Number, clean, doubtful, plain, read_number
 from chooser.errors import AmbiguousValueError, UnreadableValueError
 from chooser.parts import Tolerance
+from chooser.quantities.decimals import NUMBER, Number, clean, doubtful, plain, read_number
 
 TOLERANCE_LETTERS: Mapping[str, Tolerance] = MappingProxyType(
     {

@@ -16,7 +16,8 @@ from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 from math import isfinite
 
-from chooser.decimals import (
+from chooser.errors import UnreadableValueError
+from chooser.quantities.decimals import (
     NUMBER,
     Number,
     around_point,
@@ -26,7 +27,6 @@ from chooser.decimals import (
     plain,
     read_number,
 )
-from chooser.errors import UnreadableValueError
 
 
 @dataclass(frozen=True, slots=True)

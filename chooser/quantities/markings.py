@@ -14,17 +14,17 @@ from __future__ import annotations
 import re
 from dataclasses import dataclass
 
-from chooser.decimals import Number, clean, exact_digits
 from chooser.errors import AmbiguousValueError, BadRequestError, UnreadableValueError
-from chooser.notation import read, reads
 from chooser.parts import Tolerance
-from chooser.tolerances import (
+from chooser.quantities.decimals import Number, clean, exact_digits
+from chooser.quantities.notation import read, reads
+from chooser.quantities.tolerances import (
     DOUBTFUL_LETTERS,
     PICOFARAD_LETTERS,
     TOLERANCE_LETTERS,
     format_tolerance,
 )
-from chooser.units import CAPACITANCE, format_capacitance
+from chooser.quantities.units import CAPACITANCE, format_capacitance
 
 _EXAMPLE = "104, 473K or 4n7"
 _SMALL = 10e-12

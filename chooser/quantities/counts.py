@@ -11,9 +11,9 @@ from __future__ import annotations
 import re
 from collections.abc import Callable
 
-from chooser.decimals import NUMBER, clean, doubtful, plain, read_number
 from chooser.errors import UnreadableValueError
 from chooser.parts import Count, Sureness
+from chooser.quantities.decimals import NUMBER, clean, doubtful, plain, read_number
 
 _MOST_PIECES = 1_000_000
 _EXAMPLE = "20, ~50 or plenty"

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from types import MappingProxyType
 
-from chooser.notation import Grammar, write_with_letter, write_with_unit
+from chooser.quantities.notation import Grammar, write_with_letter, write_with_unit
 
 _OHM_LETTERS: Mapping[str, int] = MappingProxyType({"R": 0, "k": 3, "M": 6, "G": 9, "T": 12})
 _FARAD_LETTERS: Mapping[str, int] = MappingProxyType({"p": -12, "n": -9, "u": -6, "F": 0})

@@ -6,14 +6,15 @@ SI base units and fractions inside (ohm, farad, second, volt, watt, ampere, 1/K;
 0.05). Each reader returns a value or raises `UnreadableValueError`, whose subclass
 `AmbiguousValueError` carries the readings of a text that could mean several values.
 What an exact ``format_`` function writes, the ``parse_`` function beside it reads as the
-same float. Body markings such as ``104`` are read in `chooser.markings`.
+same float. Body markings such as ``104`` are read in `chooser.quantities.markings`.
 """
 
 from __future__ import annotations
 
 import re
 
-from chooser.counts import (
+from chooser.errors import AmbiguousValueError, UnreadableValueError
+from chooser.quantities.counts import (
     format_count,
     format_tempco,
     parse_count,
@@ -22,18 +23,22 @@ from chooser.counts import (
     parse_tempco,
     parse_turns,
 )
-from chooser.durations import format_duration, parse_duration
-from chooser.errors import AmbiguousValueError, UnreadableValueError
-from chooser.markings import code_value
-from chooser.notation import Grammar, is_bare, read, reads
-from chooser.ranges import (
+from chooser.quantities.durations import format_duration, parse_duration
+from chooser.quantities.markings import code_value
+from chooser.quantities.notation import Grammar, is_bare, read, reads
+from chooser.quantities.ranges import (
     Span,
     is_range,
     parse_capacitance_range,
     parse_resistance_range,
 )
-from chooser.tolerances import format_percent, format_tolerance, parse_percent, parse_tolerance
-from chooser.units import (
+from chooser.quantities.tolerances import (
+    format_percent,
+    format_tolerance,
+    parse_percent,
+    parse_tolerance,
+)
+from chooser.quantities.units import (
     CAPACITANCE,
     CURRENT,
     POWER,
@@ -107,7 +112,7 @@ def parse_capacitance(text: str) -> float:
 
     Parameters
     ----------
-    text : any text; markings are not read here, see `chooser.markings`.
+    text : any text; markings are not read here, see `chooser.quantities.markings`.
 
     Returns
     -------

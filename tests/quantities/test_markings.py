@@ -7,10 +7,10 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from chooser.errors import AmbiguousValueError, BadRequestError, UnreadableValueError
-from chooser.markings import format_capacitor_marking, parse_capacitor_marking
 from chooser.parts import Tolerance
 from chooser.preferred import series
-from chooser.tolerances import TOLERANCE_LETTERS
+from chooser.quantities.markings import format_capacitor_marking, parse_capacitor_marking
+from chooser.quantities.tolerances import TOLERANCE_LETTERS
 
 # Source: the three-digit code and its letters as capacitor makers' tables give them
 # (104 is 100 nF, 103 is 10 nF, 105K is 1 uF +-10 %); letters IEC 60062.
