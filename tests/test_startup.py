@@ -50,7 +50,7 @@ def test_listing_the_stock_needs_no_library_of_databases(tmp_path):
     "module",
     [
         "quantities",
-        "markings",
+        "quantities.markings",
         "preferred",
         "parts",
         "errors",
