@@ -108,6 +108,11 @@ def ranked_ways(
     greatest plenty downwards, only holdings that allow it are looked at, and of these only the
     lowest ids, because a way through a higher id has enough better ones before it.
     """
+    lots = [resistors.lots[lot] for lot in set(members(pairing.resistor))]
+    lots += [capacitors.lots[lot] for lot in set(members(pairing.capacitor))]
+    if all(len(lot.holdings) == 1 for lot in lots):
+        yield _only_way(pairing, resistors, capacitors)
+        return
     yielded = 0
     for plenty in _plenties(pairing, resistors, capacitors):
         sides = (
@@ -126,6 +131,17 @@ def ranked_ways(
                 yielded += 1
             if yielded >= top:
                 return
+
+
+def _only_way(pairing: Pairing, resistors: Drawers, capacitors: Drawers) -> Choice:
+    """Return the choice where every lot is one drawer."""
+    return Choice(
+        pairing, _in_only(pairing.resistor, resistors), _in_only(pairing.capacitor, capacitors)
+    )
+
+
+def _in_only(network: Network[int], drawers: Drawers) -> Network[int]:
+    return _settled(replace(network, lambda lot: drawers.lots[lot].holdings[0].id), drawers.value)
 
 
 @dataclass(frozen=True, slots=True)

@@ -14,8 +14,8 @@ from numpy.typing import NDArray
 
 from chooser.search.pools import Floats, Ints
 
-BITS = 14
-"""Buckets per octave as a power of two; with 14 the map of a table stays in the cache."""
+BITS = 15
+"""Buckets per octave as a power of two; with 15 the map of a table still stays in the cache."""
 
 WORTH = 50_000
 """Fewer windows than this are searched faster than sieved."""
@@ -34,7 +34,8 @@ class Sieve:
     """
 
     def __init__(self, values: Floats) -> None:
-        buckets = values.view(np.int64) >> _SHIFT
+        self._values = np.sort(values, kind="stable")  # a merge, for values of a few rising runs
+        buckets = self._values.view(np.int64) >> _SHIFT
         self._base = int(buckets.min(initial=np.iinfo(np.int64).max)) - 2
         last = int(buckets.max(initial=self._base))
         self._occupied = np.zeros(last - self._base + 2, dtype=np.bool_)
@@ -59,30 +60,39 @@ class Sieve:
         # Out-of-range buckets are clipped to the first and last, which are always empty.
         return np.asarray(np.take(self._occupied, buckets, mode="clip"))
 
+    def hold(self, starts: Floats, ends: Floats) -> NDArray[np.bool_]:
+        """Tell which windows do hold a value; both ends (n,) are included."""
+        first = np.searchsorted(self._values, starts, "left")
+        value = np.take(self._values, first, mode="clip")
+        return np.asarray((value >= starts) & (value <= ends))
+
 
 NARROW = 2.0 ** -(BITS + 1)
 """Greatest relative width of a window for which the sieve's answer holds."""
 
 
 def sieved_pairs(
-    sieve: Sieve, bases: Floats, shifts: Floats, first: Ints, last: Ints
+    sieve: Sieve,
+    windows: tuple[Floats, Floats],
+    shifts: Floats,
+    ends: tuple[Ints, Ints],
 ) -> Iterator[tuple[Ints, Ints]]:
-    """Yield the pairs of a window and a shift whose shifted window may hold a value.
+    """Yield the pairs of a window and a shift whose shifted window holds a value.
 
     Parameters
     ----------
     sieve : of the table searched.
-    bases : (w,) lower ends of the windows; windows near in value should stand together.
-    shifts : (h,) amounts to take off them.
-    first, last : (w,) range of the shifts to look at for each window, last excluded.
+    windows : (w,) lower ends and widths of the windows; near ones should stand together.
+    shifts : (h,) amounts to take off their ends.
+    ends : (w,) range of the shifts to look at for each window, last excluded. A shifted window
+        must start at its width / NARROW or above.
 
     Yields
     ------
-    Numbers of windows and of shifts, in batches. The answer holds for the pairs whose shifted
-    window starts at its absolute width / NARROW or above.
+    Numbers of windows and of shifts, in batches.
     """
-    windows: list[Ints] = []
-    found: list[Ints] = []
+    bases, (first, last) = windows[0], ends
+    found: list[tuple[Ints, Ints]] = []
     for start in range(0, len(bases), _WINDOWS):
         chunk = slice(start, start + _WINDOWS)
         left, right = int(first[chunk].min()), int(last[chunk].max())
@@ -92,10 +102,20 @@ def sieved_pairs(
         window, shift = np.nonzero(hits)
         window, shift = window + start, shift + left
         inside = (shift >= first[window]) & (shift < last[window])
-        windows.append(window[inside])
-        found.append(shift[inside])
-        if sum(map(len, windows)) > _BATCH:
-            yield np.concatenate(windows), np.concatenate(found)
-            windows, found = [], []
-    if windows:
-        yield np.concatenate(windows), np.concatenate(found)
+        found.append((window[inside], shift[inside]))
+        if sum(len(window) for window, _ in found) > _BATCH:
+            yield _held(sieve, windows, shifts, found)
+            found = []
+    if found:
+        yield _held(sieve, windows, shifts, found)
+
+
+def _held(
+    sieve: Sieve, windows: tuple[Floats, Floats], shifts: Floats, found: list[tuple[Ints, Ints]]
+) -> tuple[Ints, Ints]:
+    """Keep the pairs that do hold a value."""
+    window = np.concatenate([pair[0] for pair in found])
+    shift = np.concatenate([pair[1] for pair in found])
+    starts = windows[0][window] - shifts[shift]
+    kept = sieve.hold(starts, starts + windows[1][window])
+    return window[kept], shift[kept]

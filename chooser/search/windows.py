@@ -215,12 +215,12 @@ def _promising(
     if join is Join.SERIES:
         middle = np.clip(np.searchsorted(heads.value, room, "right"), first, last)
         yield from ragged(middle, last)
-        yield from sieved_pairs(sieve(join), bases, shifts, first, middle)
+        yield from sieved_pairs(sieve(join), (bases, widths), shifts, (first, middle))
     else:
         far = np.where(narrow, 1 / np.where(narrow, room, 1.0), np.inf)
         middle = np.clip(np.searchsorted(heads.value, far, "left"), first, last)
         yield from ragged(first, middle)
-        yield from sieved_pairs(sieve(join), bases, shifts, middle, last)
+        yield from sieved_pairs(sieve(join), (bases, widths), shifts, (middle, last))
 
 
 def _partner_windows(join: Join, head: Floats, low: Floats, high: Floats) -> tuple[Floats, Floats]:

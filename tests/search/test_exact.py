@@ -110,10 +110,10 @@ def test_the_sieved_path_is_really_taken(monkeypatch, seed):
     holdings += [capacitor(20, 1e-7), capacitor(21, 4.683e-7)]
     asked_for, passed = 0, 0
 
-    def counted(sieve, bases, shifts, first, last):
+    def counted(sieve, opened, shifts, ends):
         nonlocal asked_for, passed
-        asked_for += int(np.maximum(last - first, 0).sum())
-        for pair in sieved_pairs(sieve, bases, shifts, first, last):
+        asked_for += int(np.maximum(ends[1] - ends[0], 0).sum())
+        for pair in sieved_pairs(sieve, opened, shifts, ends):
             passed += len(pair[0])
             yield pair
 
