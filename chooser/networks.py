@@ -137,6 +137,51 @@ def shares_of(
 
 
 @dataclass(frozen=True, slots=True)
+class ToleranceShare(Generic[T]):
+    """What one part's tolerance does to the value of its network, to first order.
+
+    Attributes
+    ----------
+    member : what the leaf holds. share : its share of the value, see `shares_of`.
+    minus, plus : worst case, relative to the network's value, both >= 0.
+    spread, shift : one sigma and mean shift, relative to the network's value.
+    """
+
+    member: T
+    share: float
+    minus: float
+    plus: float
+    spread: float
+    shift: float
+
+
+def tolerance_shares(
+    network: Network[T],
+    adds: Join,
+    of: Callable[[T], float],
+    tolerance: Callable[[T], Tolerance],
+) -> tuple[ToleranceShare[T], ...]:
+    """Tell which part brings how much of the uncertainty, from left to right.
+
+    Parameters
+    ----------
+    network, adds, of : as in `value_of`.
+    tolerance : limits of a leaf's member, relative to its value.
+    """
+    return tuple(
+        ToleranceShare(
+            member,
+            share,
+            share * tolerance(member).minus,
+            share * tolerance(member).plus,
+            share * tolerance(member).spread,
+            share * tolerance(member).shift,
+        )
+        for member, share in shares_of(network, adds, of)
+    )
+
+
+@dataclass(frozen=True, slots=True)
 class SlotTolerance:
     """What the tolerances of a network's parts do to its value.
 
@@ -165,21 +210,20 @@ def slot_tolerance(
 
     Parameters
     ----------
-    network, adds, of : as in `value_of`.
-    tolerance : limits of a leaf's member, relative to its value.
+    network, adds, of, tolerance : as in `tolerance_shares`.
 
     Returns
     -------
     The slot's corners (exact, because the value increases in each part) and, to first order,
     its spread and mean shift.
     """
-    shares = shares_of(network, adds, of)
+    parts = tolerance_shares(network, adds, of, tolerance)
     return SlotTolerance(
         value=value_of(network, adds, of),
         low=value_of(network, adds, lambda part: of(part) * (1 - tolerance(part).minus)),
         high=value_of(network, adds, lambda part: of(part) * (1 + tolerance(part).plus)),
-        spread=sum(share * tolerance(part).spread for part, share in shares),
-        shift=sum(share * tolerance(part).shift for part, share in shares),
+        spread=sum(part.spread for part in parts),
+        shift=sum(part.shift for part in parts),
     )
 
 

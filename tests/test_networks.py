@@ -23,6 +23,7 @@ from chooser.networks import (
     replace,
     shares_of,
     slot_tolerance,
+    tolerance_shares,
     value_of,
     write_network,
 )
@@ -329,3 +330,15 @@ def test_any_text_is_read_or_refused(text):
 
 def test_a_long_row_is_no_burden():
     assert worth(parse_network(" + ".join(["1"] * 20_000), int)) == 20_000
+
+
+def test_each_part_has_its_share_of_the_worst_case_and_of_the_spread():
+    """100k 1 % + 10k 5 %, field arithmetic by hand: 10/11 x 1 % + 1/11 x 5 % = 1.36364 %."""
+    network = Group(Join.SERIES, (Leaf((100e3, 0.01)), Leaf((10e3, 0.05))))
+    parts = tolerance_shares(
+        network, Join.SERIES, lambda part: part[0], lambda part: Tolerance(part[1], part[1])
+    )
+    assert [part.plus for part in parts] == pytest.approx([0.01 / 1.1, 0.005 / 1.1])
+    assert sum(part.minus for part in parts) == pytest.approx(0.0136364, abs=5e-8)
+    assert parts[0].spread == pytest.approx(0.01 / 1.1 / 3**0.5)
+    assert all(part.shift == 0 for part in parts)

@@ -85,9 +85,11 @@ def answer_lines(answer: Answer, width: int | None, *, with_reasons: bool) -> li
         lines += _wrapped(_nothing(answer), width)
     for sentence in answer.advice:
         lines += _wrapped(sentence, width)
-    if answer.refusals:
+    # Where nothing was searched, rules for networks kept nothing out.
+    refusals = [each for each in answer.refusals if each.holdings or answer.searched.combinations]
+    if refusals:
         lines += _wrapped("By the house rules (--allow RULE lifts one):", width)
-    for refusal in answer.refusals:
+    for refusal in refusals:
         lines += _wrapped(f"{refusal.rule}: {refusal.why}", width, "  ", "    ")
     lines += _wrapped(_searched(answer), width)
     return [*lines, *(_wrapped(SAFETY, width) if answer.fits else [])]

@@ -17,7 +17,7 @@ import numpy as np
 from chooser.networks import Join
 from chooser.search.pools import Floats, Ints
 from chooser.search.sieve import NARROW, WORTH, Sieve, sieved_pairs
-from chooser.search.tables import Rows, Tables, joined, ranks_no_lower
+from chooser.search.tables import Rows, Tables, every_network, joined, ranks_no_lower
 
 MOST_PAIRS = 1 << 20
 """Head-and-window pairs worked on at once: bounds the memory, about 100 bytes each."""
@@ -66,29 +66,11 @@ def find_in_windows(tables: Tables, size: int, low: Floats, high: Floats) -> Ite
 
 def _in_any(tables: Tables, size: int, low: Floats, high: Floats) -> Iterator[Found]:
     if tables.listed(size):
-        for table in _tables_of(tables, size):
+        for table in every_network(tables, size):
             yield from _in_table(table, low, high)
         return
     for join in Join:
         yield from _in_groups(tables, size, join, low, high)
-
-
-def count_in_windows(tables: Tables, size: int, low: Floats, high: Floats) -> int | None:
-    """Count what lies in the windows where that is cheap; None where the size is not listed."""
-    if not tables.listed(size):
-        return None
-    total = 0
-    for table in _tables_of(tables, size):
-        first = np.searchsorted(table.value, low, "left")
-        last = np.searchsorted(table.value, high, "right")
-        total += int(np.maximum(last - first, 0).sum())
-    return total
-
-
-def _tables_of(tables: Tables, size: int) -> list[Rows]:
-    if size == 1:
-        return [tables.singles]
-    return [tables.groups(size, join) for join in Join]
 
 
 def _in_table(table: Rows, low: Floats, high: Floats) -> Iterator[Found]:
