@@ -70,21 +70,26 @@ def gather(
     -------
     The pool, in an order that is always the same: by what adds, then by the smallest id.
     """
-    grouped: dict[Hashable, list[Holding]] = {}
+    grouped: dict[Hashable, list[tuple[Holding, int]]] = {}
     for holding in sorted(holdings, key=attrgetter("id")):
-        if uses_of(holding, boards) > 0:
-            grouped.setdefault(likeness(holding), []).append(holding)
-    lots = [
-        Lot(tuple(members), tuple(uses_of(member, boards) for member in members))
-        for members in grouped.values()
-    ]
-    lots.sort(key=lambda lot: (_adding(lot.holdings[0]), lot.holdings[0].id))
+        uses = uses_of(holding, boards)
+        if uses > 0:
+            grouped.setdefault(likeness(holding), []).append((holding, uses))
+    # Ids rise in every lot and from lot to lot, so equal values stay in the order of their ids.
+    lots = sorted(
+        (_lot_of(members) for members in grouped.values()),
+        key=lambda lot: _adding(lot.holdings[0]),
+    )
     return Pool(
         lots=tuple(lots),
         value=np.array([lot.holdings[0].part.effective for lot in lots], dtype=np.float64),
         adding=np.array([_adding(lot.holdings[0]) for lot in lots], dtype=np.float64),
         uses=np.array([min(sum(lot.uses), PLENTY) for lot in lots], dtype=np.int64),
     )
+
+
+def _lot_of(members: list[tuple[Holding, int]]) -> Lot:
+    return Lot(tuple(holding for holding, _ in members), tuple(uses for _, uses in members))
 
 
 def _adding(holding: Holding) -> float:

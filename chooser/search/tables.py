@@ -100,8 +100,7 @@ class Rows:
 
     def network(self, row: int) -> Network[int]:
         """Return one row as a tree whose leaves are part numbers of the pool."""
-        leaves = self.leaves[row]
-        return replace(self.shapes[self.shape[row]], lambda column: int(leaves[column]))
+        return replace(self.shapes[self.shape[row]], self.leaves[row].tolist().__getitem__)
 
     def evaluate(self, of: Floats, adds: Join) -> Floats:
         """Fold a figure of the parts over every network.

@@ -6,6 +6,7 @@ pytest tests/benchmarks --benchmark-only -m ''
 from __future__ import annotations
 
 import sys
+from functools import partial
 from pathlib import Path
 
 import numpy as np
@@ -26,6 +27,7 @@ from workshops import measured_stock, preferred_stock
 
 TARGETS = (90.0, 3.7, 1.0, 0.0123)
 IDEAL = timer_named("ideal")
+STOCKS = {"preferred values": preferred_stock, "measured values": partial(measured_stock, 1)}
 
 
 def request(target: float, rank: Rank) -> Request:
@@ -37,26 +39,30 @@ def chosen(stock, wish):
     return search_choices(usable_parts(stock, wish), wish)[0]
 
 
+def values(stock, kind):
+    return np.array([holding.part.value for holding in stock if holding.part.kind is kind])
+
+
 @pytest.mark.parametrize("target", TARGETS)
-def test_exact_search(benchmark, target):
-    benchmark.group = f"168 x 42, error, {target} s"
-    stock, wish = preferred_stock(), request(target, Rank.ERROR)
+@pytest.mark.parametrize("name", STOCKS)
+def test_exact_search(benchmark, name, target):
+    benchmark.group = f"168 x 42 {name}, error, {target} s"
+    stock, wish = STOCKS[name](), request(target, Rank.ERROR)
     found = benchmark.pedantic(chosen, (stock, wish), rounds=15, warmup_rounds=1)
-    ohms = np.array([h.part.value for h in stock if h.part.kind is Kind.RESISTOR])
-    farads = np.array([h.part.value for h in stock if h.part.kind is Kind.CAPACITOR])
+    plain = ten_best(values(stock, Kind.RESISTOR), values(stock, Kind.CAPACITOR), target)
     told = [(c.pairing.ppm, c.pairing.parts, float(c.pairing.size)) for c in found]
-    plain = ten_best(ohms, farads, target)
+    benchmark.extra_info["parts of the ten"] = [row[1] for row in told]
     assert [row[:2] for row in told] == [row[:2] for row in plain]
     assert np.allclose([row[2] for row in told], [row[2] for row in plain], atol=1e-12)
 
 
 @pytest.mark.parametrize("target", TARGETS)
-def test_all_three_resistor_networks_sorted(benchmark, target):
-    benchmark.group = f"168 x 42, error, {target} s"
-    stock = preferred_stock()
-    ohms = np.array([h.part.value for h in stock if h.part.kind is Kind.RESISTOR])
-    farads = np.array([h.part.value for h in stock if h.part.kind is Kind.CAPACITOR])
-    assert len(benchmark.pedantic(ten_best, (ohms, farads, target), rounds=3)) == 10
+@pytest.mark.parametrize("name", STOCKS)
+def test_all_three_resistor_networks_sorted(benchmark, name, target):
+    benchmark.group = f"168 x 42 {name}, error, {target} s"
+    stock = STOCKS[name]()
+    sides = values(stock, Kind.RESISTOR), values(stock, Kind.CAPACITOR)
+    assert len(benchmark.pedantic(ten_best, (*sides, target), rounds=3)) == 10
 
 
 @pytest.mark.parametrize("rank", list(Rank))
