@@ -252,7 +252,7 @@ def _way_out(facts: FitFacts) -> str:
             ", or a CMOS timer" if hungry else ""
         )
     if all(holding.part.leakage is not None for holding in facts.capacitors):
-        return "it is a measured figure, so count on it and time the settled circuit"
+        return "the figure is the one written down, so see that it is true and time the circuit"
     return "measure the leakage, or take a film or low-leakage capacitor"
 
 

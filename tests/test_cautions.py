@@ -227,7 +227,7 @@ def test_the_leakage_caution_gives_ratio_and_stretch():
     assert "only 7.2 times what is lost, mostly through the capacitor" in said
     # Thevenin with 909 nA as a conductance and 350 nA: worked out apart from the package.
     assert "at the limit by" in said
-    assert "it is a measured figure" in said
+    assert "written down" in said
     # With a tight capacitor the timer is the one to blame: 9 V / 3 / 330k over 350 nA.
     blamed = text_of(tight, "leakage")
     assert "only 26 times what is lost, mostly to the NE555 timer itself" in blamed

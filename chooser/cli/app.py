@@ -5,7 +5,7 @@ from __future__ import annotations
 import typer
 
 from chooser.cli import db, fit, stock
-from chooser.cli.boundary import Boundary
+from chooser.cli.boundary import Boundary, say
 
 app = typer.Typer(
     cls=Boundary,
@@ -24,4 +24,8 @@ app.add_typer(db.app, name="db")
 
 def main() -> None:
     """Run the command line."""
-    app()
+    try:
+        app()
+    except KeyboardInterrupt:  # before or after what the boundary covers
+        say("Stopped.")
+        raise SystemExit(130) from None

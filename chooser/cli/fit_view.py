@@ -113,7 +113,7 @@ def _shown(answer: Answer) -> list[tuple[int, Fit]]:
 
 def _heading(answer: Answer) -> str:
     request = answer.request
-    low, high = (quantities.format_duration(end, digits=4) for end in request.band)
+    low, high = (quantities.format_duration(end, digits=6) for end in request.band)
     boards = "" if request.boards == 1 else f", {request.boards} boards"
     timer = f"{request.timer.name} timer"
     supply = quantities.format_voltage(request.supply)

@@ -8,7 +8,7 @@ import numpy as np
 
 from chooser.search.pools import Floats, Ints
 from chooser.search.tables import Rows, Tables, every_network
-from chooser.search.windows import ROUNDING, find_in_windows
+from chooser.search.windows import ROUNDING, find_in_windows, ragged
 
 WISHES_AT_ONCE = 2048
 """Wishes worked on together where a size is not listed: bounds the memory."""
@@ -63,7 +63,7 @@ def nearest(tables: Tables, size: int, wish: Wish, count: int) -> Near:
     if tables.listed(size):
         near = _from_tables(every_network(tables, size), inside.wanted, count)
     else:
-        near = _from_windows(tables, size, inside, count)
+        near = _shared(tables, size, inside, count)
     value, owner = near.rows.value, near.owner
     kept = np.flatnonzero((value >= least[owner]) & (value <= most[owner]))
     return _cut(Near(open_[owner[kept]], near.rows.take(kept)), wish.wanted, count)
@@ -87,6 +87,24 @@ def _from_tables(listed: list[Rows], wanted: Floats, count: int) -> Near:
         owners.append(owner)
         pieces.append(table.take(index[owner, column]))
     return Near(np.concatenate(owners), Rows.concatenated(pieces))
+
+
+def _shared(tables: Tables, size: int, wish: Wish, count: int) -> Near:
+    """Look once for all wishes that are alike: out of reach, thousands end at the same limit."""
+    wishes, alike = np.unique(
+        np.stack([wish.wanted, wish.least, wish.most]), axis=1, return_inverse=True
+    )
+    alike = alike.reshape(-1)
+    near = _cut(_from_windows(tables, size, Wish(*wishes), count), wishes[0], count)
+    order = np.argsort(near.owner, kind="stable")
+    owner = near.owner[order]
+    first = np.searchsorted(owner, alike, "left")
+    last = np.searchsorted(owner, alike, "right")
+    owners, rows = [np.empty(0, dtype=np.int64)], [np.empty(0, dtype=np.int64)]
+    for number, place in ragged(first, last):
+        owners.append(number)
+        rows.append(order[place])
+    return Near(np.concatenate(owners), near.rows.take(np.concatenate(rows)))
 
 
 def _from_windows(tables: Tables, size: int, wish: Wish, count: int) -> Near:

@@ -27,20 +27,27 @@ def shortage(request: Request, search: Search) -> tuple[str, ...]:
     -------
     One sentence, or none where not even one board can be built inside the band.
     """
-    enough, best = 0, None
-    too_many = request.boards
+
+    def can_make(boards: int) -> bool:
+        # The order of errors answers fastest whether anything lies in the band at all.
+        fit = search(replace(request, boards=boards, rank=Rank.ERROR, top=1))
+        return fit is not None and fit.in_band
+
+    if not can_make(1):
+        return ()
+    enough, too_many = 1, request.boards
     while too_many - enough > 1:
         boards = (enough + too_many) // 2
-        fit = search(replace(request, boards=boards, rank=Rank.BALANCED, top=1))
-        if fit is not None and fit.in_band:
-            enough, best = boards, fit
+        if can_make(boards):
+            enough = boards
         else:
             too_many = boards
+    best = search(replace(request, boards=enough, rank=Rank.BALANCED, top=1))
     if best is None:
         return ()
     noun = "board" if enough == 1 else "boards"
     short = _short_of(best, request.boards)
-    said = f"The stock is enough for {enough} {noun}; the simplest way for all {request.boards} is "
+    said = f"The stock is enough for {enough} {noun}; the best way, for all {request.boards} is "
     return (f"{said}short of {short}.",)
 
 

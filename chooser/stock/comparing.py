@@ -11,11 +11,12 @@ slip of the pen that is mended would count the parts twice.
 
 from __future__ import annotations
 
+from collections import Counter
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass, replace
 
 from chooser.errors import StockError
-from chooser.parts import Entry, Holding, Part, Sureness, identity_of
+from chooser.parts import Count, Entry, Holding, Part, Sureness, identity_of
 
 CORRECTABLE = ("tolerance", "technology", "voltage", "measured", "taper", "turns")
 """Traits that tell holdings apart, and may yet have been written down wrongly."""
@@ -136,32 +137,60 @@ def _without_twins(entries: Sequence[Entry]) -> dict[tuple[object, ...], Entry]:
 def _corrections(
     known: Mapping[tuple[object, ...], Holding], mentioned: Mapping[tuple[object, ...], Entry]
 ) -> dict[tuple[object, ...], Holding]:
-    """Find the rows that can only be a holding whose traits were corrected, by their identity."""
-    old: dict[tuple[object, ...], list[Holding]] = {}
-    for identity, holding in known.items():
-        if identity not in mentioned and not _is_empty(holding):
-            old.setdefault(_likeness(holding.part, holding.drawer), []).append(holding)
-    new: dict[tuple[object, ...], list[Entry]] = {}
-    for identity, entry in mentioned.items():
-        if identity not in known:
-            new.setdefault(_likeness(entry.part, entry.drawer), []).append(entry)
-    found = {}
-    for likeness, (entry, *more) in new.items():
-        candidates = old.get(likeness, [])
-        if more or len(candidates) != 1:
-            continue
-        (holding,) = candidates
-        own = identity_of(holding.part, holding.drawer)
-        merged = identity_of(_filled(holding.part, entry.part), holding.drawer)
-        # What the row leaves blank is kept; that must not make it a part which is there already.
-        if merged in (own, entry.identity) or not (merged in known or merged in mentioned):
-            found[entry.identity] = holding
+    """Find the rows that can only be a holding whose traits were corrected, by their identity.
+
+    First the rows that merely fill in what was blank, then those of the same count in which one
+    trait differs; each only where row and holding have no other to go with.
+    """
+    old = [
+        holding
+        for identity, holding in known.items()
+        if identity not in mentioned and not _is_empty(holding)
+    ]
+    new = [entry for identity, entry in mentioned.items() if identity not in known]
+    found: dict[tuple[object, ...], Holding] = {}
+    for contradictions in (0, 1):
+        taken = {holding.id for holding in found.values()}
+        partners = {
+            entry.identity: [
+                holding
+                for holding in old
+                if holding.id not in taken and _may_be(holding, entry, contradictions)
+            ]
+            for entry in new
+            if entry.identity not in found
+        }
+        wooed = Counter(holding.id for holdings in partners.values() for holding in holdings)
+        for entry in new:
+            holdings = partners.get(entry.identity, [])
+            if len(holdings) == 1 and wooed[holdings[0].id] == 1:
+                (holding,) = holdings
+                own = identity_of(holding.part, holding.drawer)
+                merged = identity_of(_filled(holding.part, entry.part), holding.drawer)
+                # What a row leaves blank is kept; it must not become a part already there.
+                if merged in (own, entry.identity) or not (merged in known or merged in mentioned):
+                    found[entry.identity] = holding
     return found
 
 
-def _likeness(part: Part, drawer: str) -> tuple[object, ...]:
-    """Give what a correction leaves as it is."""
-    return (drawer.casefold(), part.kind, part.value, part.measured is None)
+def _may_be(holding: Holding, entry: Entry, contradictions: int) -> bool:
+    """Tell whether a row may be a holding with so many of its traits corrected."""
+    old, new = holding.part, entry.part
+    if (holding.drawer.casefold(), old.kind, old.value) != (
+        entry.drawer.casefold(),
+        new.kind,
+        new.value,
+    ):
+        return False
+    alone = holding.count == entry.count == Count(1)
+    if (old.measured is None) != (new.measured is None) and not (alone and old.measured is None):
+        return False  # a measured piece is another line than the bag it came from
+    differing = sum(
+        getattr(old, name) != getattr(new, name)
+        for name in CORRECTABLE
+        if getattr(old, name) is not None and getattr(new, name) is not None
+    )
+    return differing == contradictions and (differing == 0 or holding.count == entry.count)
 
 
 def _refuse_below_claims(pairs: Iterable[tuple[Holding | None, Entry]]) -> None:

@@ -120,7 +120,6 @@ def test_what_the_sheet_leaves_out_stays_and_is_told(db, say_entry):
 @pytest.mark.parametrize(
     "correction",
     [
-        {"tolerance": Tolerance(0.01, 0.01)},
         {"technology": "metal-film"},
         {"voltage": 200.0},
         {"turns": 10.0},
@@ -128,7 +127,7 @@ def test_what_the_sheet_leaves_out_stays_and_is_told(db, say_entry):
     ],
     ids=str,
 )
-def test_a_corrected_trait_amends_the_only_holding_it_can_mean(db, say_entry, correction):
+def test_a_filled_in_trait_amends_the_only_holding_it_can_mean(db, say_entry, correction):
     loading.apply(db, [say_entry(count=20, note="kept")])
     ledger.claim(db, {1: 3}, "horn")
     row = say_entry(count=18, **correction)
@@ -142,6 +141,47 @@ def test_a_corrected_trait_amends_the_only_holding_it_can_mean(db, say_entry, co
     assert holding.part.note == "kept"
     assert [row[3] for row in rows_of(db)["movements"]] == [20, -2]  # its history goes on
     assert loading.apply(db, [row]).change is None
+
+
+def test_one_contradicted_trait_amends_where_the_count_is_the_same(db, say_entry):
+    loading.apply(db, [say_entry(count=20)])
+    (found,) = loading.apply(db, [say_entry(count=20, tolerance=ONE)]).plan.changed
+    assert (found.amended, found.recounted) == (("tolerance",), False)
+
+
+@pytest.mark.parametrize(
+    "bag", [{"count": 50}, {"count": 20, "technology": "metal-film"}], ids=["count", "technology"]
+)
+def test_another_bag_never_replaces_the_one_that_is_there(db, say_entry, bag):
+    """Tolerance and count, or tolerance and technology, differ: that is a bag of its own."""
+    loading.apply(db, [say_entry(count=20, technology="carbon-film")])
+    loading.apply(db, [say_entry(**{"technology": "carbon-film", **bag}, tolerance=ONE)])
+    stock = read_stock(db)
+    assert [each.part.tolerance for each in stock] == [Tolerance(0.05, 0.05), ONE]
+    assert stock[0].count == Count(20)
+
+
+def test_blanks_filled_in_for_two_bags_of_a_drawer_double_nothing(db, say_entry):
+    loading.apply(db, [say_entry(count=20), say_entry(count=30, tolerance=ONE)])
+    rows = [
+        say_entry(count=20, technology="carbon-film"),
+        say_entry(count=30, tolerance=ONE, technology="metal-film"),
+    ]
+    assert loading.apply(db, rows).plan.new == ()
+    stock = read_stock(db)
+    assert [each.part.technology for each in stock] == ["carbon-film", "metal-film"]
+    assert [each.count.number for each in stock] == [20, 30]
+
+
+def test_measuring_the_only_piece_amends_it(db, say_entry):
+    loading.apply(db, [say_entry(count=1)])
+    assert loading.apply(db, [say_entry(count=1, measured=9.97e3)]).plan.new == ()
+    assert [each.part.measured for each in read_stock(db)] == [9.97e3]
+
+
+def test_a_piece_measured_out_of_a_bag_is_a_line_of_its_own(db, say_entry):
+    loading.apply(db, [say_entry(count=5)])
+    assert len(loading.compare(db, [say_entry(count=1, measured=9.97e3)]).new) == 1
 
 
 def test_a_corrected_measurement_amends_the_measured_piece_and_no_other(db, say_entry):
@@ -197,7 +237,7 @@ def test_a_count_below_the_claims_of_the_corrected_holding_is_refused(db, say_en
     loading.apply(db, [say_entry(count=5)])
     ledger.claim(db, {1: 3}, "flasher")
     with pytest.raises(StockError, match="3 of holding 1 are claimed"):
-        loading.apply(db, [say_entry(count=2, tolerance=ONE)])
+        loading.apply(db, [say_entry(count=2, voltage=50.0)])
 
 
 def test_the_way_out_that_is_told_works(db, say_entry):
