@@ -87,6 +87,7 @@ def _check_archive(file: str, data: bytes) -> None:
     try:
         with zipfile.ZipFile(io.BytesIO(data)) as archive:
             size = sum(member.file_size for member in archive.infolist())
+    # NotImplementedError is how zipfile refuses an archive of a version that it does not know.
     except (zipfile.BadZipFile, ValueError, OSError, NotImplementedError, EOFError) as error:
         refuse(
             file,
