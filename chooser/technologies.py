@@ -222,6 +222,18 @@ def is_polarised(part: Part) -> bool:
     return part.kind is Kind.CAPACITOR and part.effective >= LARGE_FARAD
 
 
+def taken_for(part: Part) -> str:
+    """Return the technology that a capacitor behaves like: its own, else one by its size.
+
+    A large one of unknown technology is taken for an electrolytic, a small one for a ceramic of
+    unknown class.
+    """
+    technology = technology_of(part)
+    if technology is not None:
+        return technology.name
+    return "electrolytic" if part.effective >= LARGE_FARAD else "ceramic"
+
+
 def tolerance_of(part: Part) -> tuple[Tolerance, bool]:
     """Give the tolerance to calculate with, and whether it is only assumed.
 

@@ -9,9 +9,11 @@ from hypothesis import strategies as st
 from chooser.errors import UnknownNameError
 from chooser.parts import Kind, Part, Tolerance
 from chooser.technologies import (
+    LARGE_FARAD,
     TECHNOLOGIES,
     find_technology,
     nearest_technologies,
+    taken_for,
     technology_named,
     technology_names,
     technology_of,
@@ -139,3 +141,12 @@ def test_a_printed_tolerance_goes_before_an_assumed_one():
     assert tolerance_of(Part(_R, 1e3)) == (Tolerance(0.05, 0.05), True)
     assert technology_of(Part(_R, 1e3)) is None
     assert technology_of(bare) is technology_named("electrolytic", _C)
+
+
+def test_a_capacitor_of_unknown_technology_is_taken_for_one_by_its_size():
+    # Common practice, no source: loose parts of 1 uF and more are mostly electrolytics.
+    assert taken_for(Part(_C, LARGE_FARAD)) == "electrolytic"
+    assert taken_for(Part(_C, 0.9 * LARGE_FARAD)) == "ceramic"
+    assert taken_for(Part(_C, 0.9 * LARGE_FARAD, measured=LARGE_FARAD)) == "electrolytic"
+    for technology in technology_names(_C):
+        assert taken_for(Part(_C, LARGE_FARAD, technology=technology)) == technology

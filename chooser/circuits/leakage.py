@@ -4,14 +4,31 @@ Near the trip point real capacitors lie between a constant current and a constan
 a resistance is the model taken here, because limits that grow with C x V (electrolytics) and
 insulation given as R x C in second (films, ceramics) both are one: 0.01 C V at the rated
 voltage V is a conductance of C / 100 s whatever V is.
+
+Electrolytics are specified at 20 C and insulation at 25 C; `leak_conductance` is for either.
 """
 
 from __future__ import annotations
 
 from dataclasses import dataclass
+from math import log2
 
 from chooser.parts import Part
-from chooser.technologies import LARGE_FARAD
+from chooser.technologies import taken_for
+from chooser.temperature import KELVIN_PER_DOUBLING, leak_factor
+
+__all__ = [
+    "CURRENT_LIMITS",
+    "DOUBLING",
+    "INSULATION",
+    "SETTLED",
+    "CurrentLimit",
+    "Insulation",
+    "LeakConductance",
+    "leak_conductance",
+    "leak_conductance_at",
+    "taken_for",
+]
 
 
 @dataclass(frozen=True, slots=True)
@@ -27,6 +44,10 @@ class LeakConductance:
     limit: float
 
 
+COOL_CELSIUS, HOT_CELSIUS = 25.0, 85.0
+"""Temperatures of the two columns of insulation tables."""
+
+
 @dataclass(frozen=True, slots=True)
 class Insulation:
     """Insulation of a dielectric: leak resistance times capacitance, in second (ohm farad).
@@ -38,6 +59,15 @@ class Insulation:
 
     cool: float
     hot: float
+
+    def growth(self, celsius: float) -> float:
+        """Return by how much the typical leakage exceeds the one at 25 C (dimensionless, >= 1).
+
+        The logarithm of the insulation is taken to fall evenly from 25 C to 85 C and on beyond;
+        below 25 C no gain is counted, for none was published.
+        """
+        warmer = (celsius - COOL_CELSIUS) / (HOT_CELSIUS - COOL_CELSIUS)
+        return float((self.cool / self.hot) ** max(0.0, warmer))
 
 
 @dataclass(frozen=True, slots=True)
@@ -86,6 +116,12 @@ CURRENT_LIMITS = {
 }
 """Leakage limits of the electrolytics."""
 
+DOUBLING = {
+    # The same table gives tantalum 100 s at 25 C and 10 s at 85 C: ten times as much in 60 K.
+    "tantalum": (HOT_CELSIUS - COOL_CELSIUS) / log2(10.0),
+}
+"""Kelvin in which leakage doubles, for the electrolytics that have a figure of their own."""
+
 SETTLED = 30.0
 """Limit over settled leakage of electrolytics.
 
@@ -121,11 +157,27 @@ def leak_conductance(part: Part, supply: float | None = None) -> LeakConductance
     return LeakConductance(limit / SETTLED, limit)
 
 
-def taken_for(part: Part) -> str:
-    """Return the technology that a capacitor leaks like: its own, else by its size."""
-    if part.technology in INSULATION or part.technology in CURRENT_LIMITS:
-        return part.technology
-    return "electrolytic" if part.effective >= LARGE_FARAD else "ceramic"
+def leak_conductance_at(part: Part, supply: float | None, celsius: float) -> LeakConductance:
+    """Return what a capacitor leaks at a temperature.
+
+    Parameters
+    ----------
+    part, supply : as for `leak_conductance`; a leakage figure of the part's own is taken to hold
+        at the temperature its technology is specified at, and to grow as that technology does.
+    celsius : temperature of the part in degree Celsius.
+
+    Returns
+    -------
+    Conductances in siemens. Of films and ceramics the limit is the 85 C figure up to there; of
+    electrolytics both figures grow alike, from 20 C on, and shrink alike in the cold.
+    """
+    specified = leak_conductance(part, supply)
+    technology = taken_for(part)
+    if technology in INSULATION:
+        typical = specified.typical * INSULATION[technology].growth(celsius)
+        return LeakConductance(typical, max(specified.limit, typical))
+    factor = leak_factor(celsius, DOUBLING.get(technology, KELVIN_PER_DOUBLING))
+    return LeakConductance(specified.typical * factor, specified.limit * factor)
 
 
 def _limit(row: CurrentLimit, farad: float, voltage: float | None) -> float:

@@ -2,11 +2,12 @@
 
 Conventions
 -----------
-SI base units and fractions inside (ohm, farad, second, volt, watt, ampere, 1/K; 5 % is
-0.05). Each reader returns a value or raises `UnreadableValueError`, whose subclass
-`AmbiguousValueError` carries the readings of a text that could mean several values.
-What an exact ``format_`` function writes, the ``parse_`` function beside it reads as the
-same float. Body markings such as ``104`` are read in `chooser.quantities.markings`.
+SI base units and fractions inside (ohm, farad, second, hertz, volt, watt, ampere, 1/K; 5 % is
+0.05); temperatures are in degree Celsius. Each reader returns a value or raises
+`UnreadableValueError`, whose subclass `AmbiguousValueError` carries the readings of a text
+that could mean several values. What an exact ``format_`` function writes, the ``parse_``
+function beside it reads as the same float. Body markings such as ``104`` are read in
+`chooser.quantities.markings`.
 """
 
 from __future__ import annotations
@@ -24,14 +25,20 @@ from chooser.quantities.counts import (
     parse_turns,
 )
 from chooser.quantities.durations import format_duration, parse_duration
+from chooser.quantities.factors import format_factor, parse_factor
+from chooser.quantities.frequencies import format_frequency, parse_frequency
 from chooser.quantities.markings import code_value
 from chooser.quantities.notation import Grammar, is_bare, read, reads
 from chooser.quantities.ranges import (
     Span,
     is_range,
     parse_capacitance_range,
+    parse_duration_range,
+    parse_percent_range,
     parse_resistance_range,
+    parse_temperature_range,
 )
+from chooser.quantities.temperatures import format_temperature, parse_temperature
 from chooser.quantities.tolerances import (
     format_percent,
     format_tolerance,
@@ -57,10 +64,13 @@ __all__ = [
     "format_count",
     "format_current",
     "format_duration",
+    "format_factor",
+    "format_frequency",
     "format_percent",
     "format_power",
     "format_resistance",
     "format_tempco",
+    "format_temperature",
     "format_tolerance",
     "format_voltage",
     "is_range",
@@ -69,13 +79,19 @@ __all__ = [
     "parse_count",
     "parse_current",
     "parse_duration",
+    "parse_duration_range",
+    "parse_factor",
+    "parse_frequency",
     "parse_pack",
     "parse_percent",
+    "parse_percent_range",
     "parse_power",
     "parse_price",
     "parse_resistance",
     "parse_resistance_range",
     "parse_tempco",
+    "parse_temperature",
+    "parse_temperature_range",
     "parse_tolerance",
     "parse_turns",
     "parse_voltage",

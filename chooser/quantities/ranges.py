@@ -1,9 +1,10 @@
-"""Ranges of values: ``10..1M``, ``1n..1u``.
+"""Ranges of values: ``10..1M``, ``1n..1u``, ``5..60s``, ``50..55%``, ``0..40C``.
 
 Conventions
 -----------
 Both ends belong to the range, and the low end stands first. A resistance without a unit is
-ohm, as everywhere.
+ohm, as everywhere. The unit of durations, percentages and temperatures may stand at the high
+end alone.
 """
 
 from __future__ import annotations
@@ -13,13 +14,19 @@ from collections.abc import Callable
 from dataclasses import dataclass
 
 from chooser.errors import AmbiguousValueError, UnreadableValueError
-from chooser.quantities.decimals import clean
-from chooser.quantities.notation import read
+from chooser.quantities.decimals import NUMBER, clean
+from chooser.quantities.durations import parse_duration
+from chooser.quantities.notation import is_bare, read
+from chooser.quantities.temperatures import parse_temperature
+from chooser.quantities.tolerances import parse_percent
 from chooser.quantities.units import CAPACITANCE, RESISTANCE
 
 _DIVIDER = re.compile(
-    r" ?(?<!\.)\.\.(?!\.) ?| ?… ?| to |(?<=[0-9A-Za-z])(?<![0-9][eE]) ?-(?= ?[0-9])", re.IGNORECASE
+    r" ?(?<!\.)\.\.(?!\.) ?| ?… ?| to "
+    r"|(?<=[0-9A-Za-z%\N{DEGREE CELSIUS}])(?<![0-9][eE]) ?-(?= ?[0-9])",
+    re.IGNORECASE,
 )
+_WITH_UNIT = re.compile(rf"{NUMBER}(?P<unit>[^0-9.,]+)")
 
 
 @dataclass(frozen=True, slots=True)
@@ -28,7 +35,8 @@ class Span:
 
     Attributes
     ----------
-    low, high : ends in one SI unit, 0 < low < high.
+    low, high : ends in one unit, low <= high. Values of parts and durations are above zero,
+        fractions are not below it, temperatures may be; only these may have equal ends.
     """
 
     low: float
@@ -89,6 +97,87 @@ def parse_capacitance_range(text: str) -> Span:
     return _span(text, low, high, lambda end: read(end, CAPACITANCE))
 
 
+def parse_duration_range(text: str) -> Span:
+    """Read a range of durations: ``5s..60s``, ``5..60s``, ``1:30..5:00``.
+
+    Parameters
+    ----------
+    text : any text; a bare low end has the unit of the high one.
+
+    Returns
+    -------
+    Span
+        In second.
+
+    Raises
+    ------
+    AmbiguousValueError
+        Where an end has no unit or several readings.
+    UnreadableValueError
+        Where it is no range, or runs backwards.
+
+    See Also
+    --------
+    parse_duration
+    """
+    return _sharing_unit(text, "a range of durations", "5s..60s", parse_duration)
+
+
+def parse_percent_range(text: str) -> Span:
+    """Read a range of percentages: ``50..55%``, ``50%..55%``.
+
+    Parameters
+    ----------
+    text : any text; a bare low end is percent where the high one is.
+
+    Returns
+    -------
+    Span
+        As fractions (50 % is 0.5), 0 <= low < high.
+
+    Raises
+    ------
+    AmbiguousValueError
+        Where an end has no % sign or several readings.
+    UnreadableValueError
+        Where it is no range, or runs backwards.
+
+    See Also
+    --------
+    parse_percent
+    """
+    return _sharing_unit(text, "a range of percentages", "50..55%", parse_percent)
+
+
+def parse_temperature_range(text: str) -> Span:
+    """Read a temperature or a range of them: ``0..40C``, ``-10..+50 °C``, ``25C``.
+
+    Parameters
+    ----------
+    text : any text; a bare low end has the unit of the high one.
+
+    Returns
+    -------
+    Span
+        In degree Celsius; low equals high where one temperature was written.
+
+    Raises
+    ------
+    AmbiguousValueError
+        Where an end has no unit or several readings.
+    UnreadableValueError
+        Where it is no temperature, is in another unit, or runs backwards.
+
+    See Also
+    --------
+    parse_temperature
+    """
+    if not is_range(text):
+        single = parse_temperature(text)
+        return Span(single, single)
+    return _sharing_unit(text, "a range of temperatures", "0..40C", parse_temperature)
+
+
 def is_range(text: str) -> bool:
     """Tell whether a text has the form of a range, whatever stands at its ends."""
     try:
@@ -100,25 +189,40 @@ def is_range(text: str) -> bool:
 
 def _ends(text: str, what: str, example: str) -> tuple[str, str]:
     """Cut a range in two."""
-    ends = _DIVIDER.split(clean(text, what, example))
+    ends = [end.strip() for end in _DIVIDER.split(clean(text, what, example))]
     if len(ends) != 2 or not all(ends):  # noqa: PLR2004 - two ends
         raise UnreadableValueError(text, f"is not {what}", f"write low..high such as {example}")
     return ends[0], ends[1]
 
 
+def _sharing_unit(text: str, what: str, example: str, parse: Callable[[str], float]) -> Span:
+    """Read a range whose unit may stand at the high end alone."""
+    low, high = _ends(text, what, example)
+    match = _WITH_UNIT.fullmatch(high)
+    if match is None or not is_bare(low):
+        return _span(text, low, high, parse)
+    read_as = low + match["unit"]
+    if _end(text, high, parse) < _end(text, read_as, parse):
+        problem = f"runs backwards, as its low end is read as {read_as}"
+        raise UnreadableValueError(text, problem, "write two ends, each with its unit")
+    return _span(text, read_as, high, parse)
+
+
 def _span(text: str, low: str, high: str, parse: Callable[[str], float]) -> Span:
-    """Read both ends, saying in a refusal which range they belong to."""
-    values = []
-    for end in (low, high):
-        try:
-            values.append(parse(end))
-        except AmbiguousValueError as error:
-            problem = f"has an end, {end}, that can be read in more than one way"
-            raise AmbiguousValueError(text, error.readings, problem) from None
-        except UnreadableValueError as error:
-            problem = f"has an end, {end}, that {error.problem}"
-            raise UnreadableValueError(text, problem, error.advice) from None
+    """Read both ends in their order."""
+    values = _end(text, low, parse), _end(text, high, parse)
     if values[0] >= values[1]:
         state = "is empty" if values[0] == values[1] else "runs backwards"
         raise UnreadableValueError(text, state, "write two ends, the smaller one first")
-    return Span(values[0], values[1])
+    return Span(*values)
+
+
+def _end(text: str, end: str, parse: Callable[[str], float]) -> float:
+    """Read an end, saying in a refusal which range it belongs to."""
+    try:
+        return parse(end)
+    except UnreadableValueError as error:
+        problem = f"has an end, {end}, that {error.problem}"
+        if isinstance(error, AmbiguousValueError):
+            raise AmbiguousValueError(text, error.readings, problem) from None
+        raise UnreadableValueError(text, problem, error.advice) from None

@@ -15,6 +15,8 @@ from chooser.quantities import (
     is_range,
     parse_capacitance_range,
     parse_duration,
+    parse_duration_range,
+    parse_percent_range,
     parse_resistance_range,
 )
 
@@ -176,6 +178,19 @@ def test_any_text_is_a_duration_or_refused(text):
         (parse_resistance_range, "1k-10k", 1e3, 1e4),
         (parse_resistance_range, "10…100", 10, 100),
         (parse_resistance_range, "1e3..1M", 1e3, 1e6),
+        (parse_duration_range, "5s..60s", 5, 60),
+        (parse_duration_range, "5..60s", 5, 60),
+        (parse_duration_range, "5-60 s", 5, 60),
+        (parse_duration_range, "5 - 60 s", 5, 60),
+        (parse_duration_range, "1 to 5 min", 60, 300),
+        (parse_duration_range, "30s..5min", 30, 300),
+        (parse_duration_range, "1:30..5:00", 90, 300),
+        (parse_duration_range, "90s..2h30min", 90, 9000),
+        (parse_percent_range, "50..55%", 0.5, 0.55),
+        (parse_percent_range, "50%..55%", 0.5, 0.55),
+        (parse_percent_range, "50%-55%", 0.5, 0.55),
+        (parse_percent_range, "33,3 to 66,7 percent", 0.333, 0.667),
+        (parse_percent_range, "0..5%", 0, 0.05),
     ],
 )
 def test_a_range_is_read(parse, text, low, high):
@@ -195,6 +210,20 @@ def test_a_range_is_read(parse, text, low, high):
         (parse_resistance_range, "1..2..3", "write low..high"),
         (parse_resistance_range, "1...5", "write low..high"),
         (parse_resistance_range, "0..5", "is zero"),
+        (parse_duration_range, "60..5s", "runs backwards, as its low end is read as 60s"),
+        (parse_duration_range, "90..2min", "runs backwards, as its low end is read as 90min"),
+        (parse_duration_range, "60s..60s", "is empty"),
+        (parse_duration_range, "60s", "write low..high"),
+        (parse_duration_range, "5..60", "has an end, 5, that has no unit; write 5s or 5min"),
+        (parse_duration_range, "5s..60", "has an end, 60, that has no unit; write 60s or 60min"),
+        (parse_duration_range, "5..2h30min", "has an end, 5, that has no unit"),
+        (parse_duration_range, "1..1:30", "has an end, 1, that has no unit"),
+        (parse_duration_range, "5..60 furlongs", "has an end, 60 furlongs, that is not a"),
+        (parse_percent_range, "55..50%", "runs backwards"),
+        (parse_percent_range, "50%", "write low..high"),
+        (parse_percent_range, "50..55", "has an end, 50, that has no % sign; write 50%"),
+        (parse_percent_range, "0.5..0.55", "write 0.5% or 50%"),
+        (parse_percent_range, "-5..5%", "is below zero"),
     ],
 )
 def test_what_is_no_range_is_refused_with_what_to_do(parse, text, words):
@@ -208,6 +237,9 @@ def test_what_is_no_range_is_refused_with_what_to_do(parse, text, words):
     [
         (parse_resistance_range, "10m..1M"),
         (parse_capacitance_range, "1..100n"),
+        (parse_duration_range, "5..10m"),
+        (parse_duration_range, "1s..1,500s"),
+        (parse_percent_range, "1..1,500%"),
     ],
 )
 def test_a_range_with_a_doubtful_end_is_refused_naming_it(parse, text):
@@ -222,7 +254,7 @@ def test_single_values_do_not_look_like_ranges(text):
 
 @given(st.text() | st.from_regex(r"[0-9.,:]{1,4}[a-zµ]{0,3}(\.\.|-| to |…)[0-9.,:]{1,4}[a-z]{0,3}"))
 def test_any_text_is_a_range_or_refused(text):
-    for parse in (parse_resistance_range, parse_capacitance_range):
+    for parse in (parse_resistance_range, parse_capacitance_range, parse_duration_range):
         try:
             span = parse(text)
         except UnreadableValueError as error:
@@ -230,3 +262,21 @@ def test_any_text_is_a_range_or_refused(text):
         else:
             assert 0 < span.low < span.high
     is_range(text)
+
+
+@given(st.text() | st.from_regex(r"[0-9.,]{1,4} ?%?(\.\.|-| to |…)[0-9.,]{1,4} ?%?"))
+def test_any_text_is_a_range_of_percentages_or_refused(text):
+    try:
+        span = parse_percent_range(text)
+    except UnreadableValueError as error:
+        assert str(error).endswith(".")  # noqa: PT017 - both ends are fine, a crash is not
+    else:
+        assert 0 <= span.low < span.high
+
+
+@given(st.floats(1e-9, 1e9), st.floats(1e-9, 1e9))
+def test_a_range_that_was_written_is_read_with_the_same_ends(one, other):
+    low, high = sorted((one, other))
+    text = f"{format_duration(low)}..{format_duration(high)}"
+    if len(text) <= 60 and low < high:
+        assert parse_duration_range(text) == Span(low, high)

@@ -21,11 +21,14 @@ from chooser.quantities import (
     parse_count,
     parse_current,
     parse_duration,
+    parse_factor,
+    parse_frequency,
     parse_percent,
     parse_power,
     parse_price,
     parse_resistance,
     parse_tempco,
+    parse_temperature,
     parse_tolerance,
     parse_turns,
     parse_voltage,
@@ -337,6 +340,9 @@ READERS = [
     parse_tempco,
     parse_turns,
     parse_price,
+    parse_frequency,
+    parse_temperature,
+    parse_factor,
 ]
 
 
