@@ -1,53 +1,59 @@
-"""The honest interval of one circuit: nominal, worst corners, spread, and the chance to fit.
+"""The honest interval of a circuit: nominal, worst corners, spread, and the chance to fit.
 
 Conventions: the parts of one slot err together (one bag, one maker, one meter), so a slot
-arrives here as one value with its ends; the two slots and the timer err independently. A
-value between its ends counts as equally likely everywhere. The timer's error is normal with
-a third of the data-sheet limit as one sigma, cut at that limit: parts beyond it are not sold,
-and sheets that print both figures print 1 % typical beside 3 % at most.
+arrives here as one value with its ends; the slots and the device err independently. A value
+between its ends counts as equally likely everywhere. The device's own factor is normal to
+either side with a third of its limit as one sigma, cut at that limit: devices beyond it are not
+sold, and sheets that print both figures print 1 % typical beside 3 % at most.
 """
 
 from __future__ import annotations
 
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
-from functools import lru_cache
-from math import erf, exp, inf, isfinite, log, sqrt
+from math import inf, isfinite
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from chooser.circuits.monostable import Drive, earliest, interval, latest, sensitivity, typical
-from chooser.circuits.timers import Timer
+from chooser.chance import Band, chance_of, device_law
+from chooser.circuits.circuit import TIMED, Circuit, outputs_of
+from chooser.parts import Tolerance
+from chooser.slot_facts import SlotFacts
 
 Array = NDArray[np.float64]
 
-SIGMAS = 3.0
-"""The data-sheet limit of the timing error, counted in its sigmas."""
+_LEAKS = np.concatenate([[0.0], 2.0 ** (-np.arange(20) / 2.0)])
+"""Shares of the leakage limit at which an oscillator is looked at.
 
-_CELLS = 64  # nodes of a factor that is summed over; the error of the sum is some 1/cells^2
-_ROUNDING = 1e-12  # relative; less is no difference
-_EDGES = 257  # corners of the table of the factor that is integrated exactly between them
+A leak lengthens the charging and shortens the discharging; with low trip points a period first
+falls with it and then rises without end.
+"""
+
+_STEP = 1e-5  # relative change of a part that tells how an output follows it
 
 
 @dataclass(frozen=True, slots=True)
-class SlotFacts:
-    """What is known of the network in one slot.
+class Reading:
+    """What a circuit will really do with one of its outputs.
 
     Attributes
     ----------
-    value : network value, ohm or farad, > 0.
-    low, high : worst-case ends in the same unit, low <= value <= high.
-    spread : one sigma relative to the value. shift : mean error relative to the value.
-    leak_typical, leak_limit : leak conductance of a capacitor slot in siemens.
+    output : its name.
+    nominal : with typical currents and leakage; a time that never ends is infinite.
+    low, high : least and most of any corner; `high` is None for a time that may never end.
+    mean : expected, asymmetric tolerances counted.
+    spread : one sigma, relative.
+    follows : d ln output / d ln value for each slot, the capacitor last.
     """
 
-    value: float
+    output: str
+    nominal: float
     low: float
-    high: float
+    high: float | None
+    mean: float
     spread: float
-    shift: float
-    leak_typical: float = 0.0
-    leak_limit: float = 0.0
+    follows: tuple[float, ...]
 
 
 @dataclass(frozen=True, slots=True)
@@ -56,88 +62,116 @@ class Outlook:
 
     Attributes
     ----------
-    nominal : interval in second with typical currents and leakage; infinity if it never ends.
-    low : shortest interval of any corner in second.
-    high : longest interval of any corner in second; None if it may never end.
-    mean : expected interval in second, asymmetric tolerances counted.
-    spread : one sigma of the relative interval.
-    chance : probability, 0 to 1, that a build lands in the accepted band.
+    readings : of every output, the chief one first.
+    chance : probability, 0 to 1, that a build lands in every accepted band.
     """
 
-    nominal: float
-    low: float
-    high: float | None
-    mean: float
-    spread: float
+    readings: tuple[Reading, ...]
     chance: float
+
+    def of(self, output: str) -> Reading:
+        """Return the reading of an output."""
+        return next(reading for reading in self.readings if reading.output == output)
+
+    @property
+    def chief(self) -> Reading:
+        """The reading of the chief output."""
+        return self.readings[0]
 
 
 def outlook(
-    r: SlotFacts, c: SlotFacts, timer: Timer, supply: float, band: tuple[float, float]
+    circuit: Circuit,
+    rs: Sequence[SlotFacts],
+    c: SlotFacts,
+    bands: Mapping[str, Band],
+    scale: float = 1.0,
 ) -> Outlook:
-    """Return what the monostable of two slots and a timer will really do.
+    """Return what a circuit of given slots will really do.
 
     Parameters
     ----------
-    r, c : the timing resistor and the timing capacitor.
-    timer : the timer; with the ideal one only the tolerances of the parts count.
-    supply : supply voltage in volt.
-    band : lowest and highest accepted interval in second.
+    circuit : the circuit; a lossless one only knows the tolerances of the parts.
+    rs : the resistor slots in order. c : the capacitor slot, or `NOTHING`.
+    bands : lowest and highest accepted value by output.
+    scale : of all times, as the variant of the circuit has it.
 
     Returns
     -------
-    The low corner has R and C at their low ends, no losses, the poorest discharge and the
-    fastest timer; the high corner the opposite, with every loss at its limit. The interval
-    is monotone in each of them, so no other corner lies outside.
+    The corners are all combinations of low and high ends of the slots, no leakage and its
+    limit, and the corners of the device; every output is monotone in each of them (of an
+    oscillator's leakage, which may first shorten a period, steps between are looked at as
+    well), so nothing that may happen lies outside.
     """
-    drive = typical(timer, supply)
-    error = timer.timing_error_limit
-    nominal = float(interval(r.value, c.value, c.leak_typical, drive))
-    low = float(interval(r.low, c.low, 0.0, earliest(timer, supply))) * (1.0 - error)
-    high = float(interval(r.high, c.high, c.leak_limit, latest(timer, supply))) * (1.0 + error)
-    chance = _chance(r, c, drive, error, band)
-    if not isfinite(nominal):
-        return Outlook(inf, low, None, inf, inf, chance)
-    steep = float(sensitivity(r.value, c.value, c.leak_typical, drive))
-    mean = float(mean_of(nominal, steep, r.shift, c.shift))
-    spread = float(spread_of(steep, r.spread, c.spread, error))
-    return Outlook(nominal, low, high if isfinite(high) else None, mean, spread, chance)
+    nominal = _outputs(circuit, [r.value for r in rs], c.value, c.leak_typical, scale)
+    ends = _corners(circuit, rs, c, scale)
+    slots = (*rs, *((c,) if circuit.capacitor else ()))
+    follows = _follows(circuit, rs, c, scale)
+    device = device_law(circuit.error)
+    readings = []
+    for output in circuit.outputs:
+        value = float(nominal[output])
+        steep = tuple(float(each[output]) for each in follows)
+        if not isfinite(value) or value == 0.0 or not all(map(isfinite, steep)):
+            readings.append(_hopeless(output, value, ends[output], len(slots)))
+            continue
+        through = weight_of(output)
+        mean = mean_of(value, steep, [s.shift for s in slots], through * device.shift)
+        spread = spread_of(steep, [s.spread for s in slots], through * device.spread)
+        low, high = ends[output]
+        most = high if isfinite(high) else None
+        readings.append(Reading(output, value, low, most, float(mean), float(spread), steep))
+    return Outlook(tuple(readings), chance_of(circuit, rs, c, bands, scale))
 
 
-def mean_of(nominal: ArrayLike, steep: ArrayLike, r_shift: ArrayLike, c_shift: ArrayLike) -> Array:
-    """Return the expected interval, to first order in the shift of R.
+def weight_of(output: str) -> int:
+    """Tell how an output follows a device that is slow: 1 for times, -1, or 0 where it does not."""
+    if output in TIMED:
+        return 1
+    return -1 if output == "frequency" else 0
+
+
+def mean_of(
+    nominal: ArrayLike,
+    steep: Sequence[ArrayLike],
+    shifts: Sequence[ArrayLike],
+    device_shift: float = 0.0,
+) -> Array:
+    """Return the expected output, to first order in the shift of each slot.
 
     Parameters
     ----------
-    nominal : interval in second. steep : d ln t / d ln R, dimensionless.
-    r_shift, c_shift : mean errors of the slots, relative. All broadcast.
+    nominal : the output. steep : d ln output / d ln value of each slot. shifts : mean errors of
+        the slots, relative. device_shift : that of the device. All broadcast.
 
     Returns
     -------
-    Interval in second, of the broadcast shape.
+    In the unit of `nominal`, of the broadcast shape.
     """
-    nominal, steep, r_shift, c_shift = _arrays(nominal, steep, r_shift, c_shift)
-    return np.asarray(nominal * (1.0 + steep * r_shift) * (1.0 + c_shift))
+    mean = np.asarray(nominal, dtype=np.float64) * (1.0 + device_shift)
+    for follows, shift in zip(steep, shifts, strict=True):
+        mean = mean * (1.0 + np.asarray(follows) * np.asarray(shift))
+    return np.asarray(mean)
 
 
 def spread_of(
-    steep: ArrayLike, r_spread: ArrayLike, c_spread: ArrayLike, timing_error_limit: float
+    steep: Sequence[ArrayLike], spreads: Sequence[ArrayLike], device_spread: float
 ) -> Array:
-    """Return one sigma of the relative interval: slots and timer add in squares.
+    """Return one sigma of the relative output: slots and device add in squares.
 
     Parameters
     ----------
-    steep : d ln t / d ln R, dimensionless. r_spread, c_spread : one sigma of each slot,
-        relative. All three broadcast.
-    timing_error_limit : of the timer, a fraction.
+    steep : d ln output / d ln value of each slot. spreads : one sigma of each slot, relative.
+        All broadcast.
+    device_spread : one sigma of the device's own factor.
 
     Returns
     -------
     Dimensionless, of the broadcast shape.
     """
-    steep, r_spread, c_spread = _arrays(steep, r_spread, c_spread)
-    timer = timing_error_limit / SIGMAS
-    return np.asarray(np.sqrt((steep * r_spread) ** 2 + c_spread**2 + timer**2))
+    squares: ArrayLike = device_spread**2
+    for follows, spread in zip(steep, spreads, strict=True):
+        squares = squares + (np.asarray(follows) * np.asarray(spread)) ** 2
+    return np.asarray(np.sqrt(squares), dtype=np.float64)
 
 
 def likely_miss(mean_error: ArrayLike, spread: ArrayLike) -> Array:
@@ -145,107 +179,75 @@ def likely_miss(mean_error: ArrayLike, spread: ArrayLike) -> Array:
 
     Parameters
     ----------
-    mean_error : error of the expected interval against the target, relative.
-    spread : one sigma of the relative interval; broadcasts with mean_error.
+    mean_error : error of the expected output against the target, relative.
+    spread : one sigma of the relative output; broadcasts with mean_error.
 
     Returns
     -------
     Dimensionless, of the broadcast shape.
     """
-    mean_error, spread = _arrays(mean_error, spread)
-    return np.asarray(np.sqrt(mean_error**2 + spread**2))
+    return np.asarray(np.hypot(mean_error, spread), dtype=np.float64)
 
 
-def _arrays(*values: ArrayLike) -> tuple[Array, ...]:
-    """Return the values as float64 arrays."""
-    return tuple(np.asarray(value, dtype=np.float64) for value in values)
+def _outputs(
+    circuit: Circuit, rs: Sequence[ArrayLike], c: ArrayLike, g: ArrayLike, scale: float
+) -> Mapping[str, Array]:
+    with np.errstate(invalid="ignore", divide="ignore"):
+        times = [scale * each for each in circuit.typical.times(rs, c, g)]
+        return outputs_of(circuit, times)
 
 
-@dataclass(frozen=True, slots=True)
-class _Factor:
-    """One independent factor of the interval, as a law over its values.
-
-    Attributes
-    ----------
-    edges : rising values; below: probability of staying below each of them.
-    nodes : values to sum over; weights: their probabilities.
-    """
-
-    edges: Array
-    below: Array
-    nodes: Array
-    weights: Array
-
-    @property
-    def width(self) -> float:
-        """How far the factor reaches, on a logarithmic scale."""
-        first, last = float(self.edges[0]), float(self.edges[-1])
-        if first == last:
-            return 0.0
-        return inf if first <= 0.0 or not isfinite(last) else log(last / first)
+def _corners(
+    circuit: Circuit, rs: Sequence[SlotFacts], c: SlotFacts, scale: float
+) -> Mapping[str, tuple[float, float]]:
+    """Return the least and the most of every output over all corners."""
+    ends = [(slot.low, slot.high) for slot in (*rs, c)]
+    leaks = c.leak_limit * (_LEAKS if len(circuit.outputs) > 1 else _LEAKS[:2])
+    corners = [axis.ravel() for axis in np.meshgrid(*ends, leaks, indexing="ij")]
+    values, farad, leak = corners[:-2], corners[-2], corners[-1]
+    found: dict[str, tuple[float, float]] = {}
+    for law in circuit.corners:
+        with np.errstate(invalid="ignore", divide="ignore"):
+            outputs = outputs_of(circuit, [scale * t for t in law.times(values, farad, leak)])
+        for output in circuit.outputs:
+            # A high time without end keeps the output on for ever.
+            column = np.nan_to_num(outputs[output], nan=1.0, posinf=inf)
+            low, high = found.get(output, (inf, -inf))
+            found[output] = min(low, float(column.min())), max(high, float(column.max()))
+    return {output: _by_device(output, pair, circuit.error) for output, pair in found.items()}
 
 
-def _chance(
-    r: SlotFacts, c: SlotFacts, drive: Drive, error: float, band: tuple[float, float]
-) -> float:
-    """Return the probability of an interval inside the band.
-
-    The interval is a product: C, times a rising function of R, times the timer's error. The
-    factor that reaches furthest is integrated through its distribution function, the other
-    two are summed over equal cells: deterministic, good to a few 1e-4, and exact where only
-    one of them varies.
-    """
-    factors = [_of_resistor(r, c, drive), _uniform(c.low, c.high), _of_timer(error)]
-    factors.sort(key=lambda factor: factor.width)
-    narrow, middle, wide = factors
-    if wide.width < _ROUNDING:
-        time = float(narrow.nodes[0] * middle.nodes[0] * wide.nodes[0])
-        return float(band[0] * (1.0 - _ROUNDING) <= time <= band[1] * (1.0 + _ROUNDING))
-    others = np.multiply.outer(narrow.nodes, middle.nodes)
-    weights = np.multiply.outer(narrow.weights, middle.weights)
-    share = _below(band[1], others, wide) - _below(band[0], others, wide)
-    return float(min(max(np.sum(share * weights), 0.0), 1.0))
+def _by_device(output: str, ends: tuple[float, float], error: Tolerance) -> tuple[float, float]:
+    """Widen the ends of an output by the device's own error."""
+    weight = weight_of(output)
+    if weight == 0:
+        return ends
+    slow, fast = 1.0 + error.plus, 1.0 - error.minus
+    if weight > 0:
+        return ends[0] * fast, ends[1] * slow
+    return ends[0] / slow, ends[1] / fast
 
 
-def _below(time: float, others: Array, wide: _Factor) -> Array:
-    """Return the probability of ending before a time (second), given the other factors."""
-    ends = np.isfinite(wide.edges)
-    if not ends.any():
-        return np.zeros_like(others)
-    with np.errstate(divide="ignore"):
-        wanted = time / others
-    return np.asarray(np.interp(wanted, wide.edges[ends], wide.below[ends], left=0.0))
+def _follows(
+    circuit: Circuit, rs: Sequence[SlotFacts], c: SlotFacts, scale: float
+) -> list[Mapping[str, Array]]:
+    """Return d ln output / d ln value for every slot, by central differences."""
+    values = [slot.value for slot in (*rs, c)]
+    found: list[Mapping[str, Array]] = []
+    for place in range(len(values) if circuit.capacitor else len(rs)):
+        moved = [
+            [v * (1.0 + sign * _STEP * (n == place)) for n, v in enumerate(values)]
+            for sign in (1.0, -1.0)
+        ]
+        up, down = (_outputs(circuit, each[:-1], each[-1], c.leak_typical, scale) for each in moved)
+        with np.errstate(all="ignore"):
+            found.append(
+                {name: np.log(up[name] / down[name]) / (2.0 * _STEP) for name in circuit.outputs}
+            )
+    return found
 
 
-def _of_resistor(r: SlotFacts, c: SlotFacts, drive: Drive) -> _Factor:
-    """Return the law of the interval for one farad (ohm), R being anywhere between its ends."""
-    plain = _uniform(r.low, r.high)
-    edges, nodes = (
-        # The formula is linear in C; the slot's leak stays what it is.
-        interval(values, 1.0, c.leak_typical, drive)
-        for values in (plain.edges, plain.nodes)
-    )
-    return _Factor(edges, plain.below, nodes, plain.weights)
-
-
-def _uniform(low: float, high: float) -> _Factor:
-    """Return the law of a value that may be anywhere between two ends."""
-    edges = np.linspace(low, high, _EDGES)
-    below = np.linspace(0.0, 1.0, _EDGES)
-    if low == high:
-        return _Factor(edges, below, np.array([low]), np.array([1.0]))
-    nodes = low + (high - low) * (np.arange(_CELLS) + 0.5) / _CELLS
-    return _Factor(edges, below, nodes, np.full(_CELLS, 1.0 / _CELLS))
-
-
-@lru_cache(maxsize=32)
-def _of_timer(limit: float) -> _Factor:
-    """Return the law of the timer's own factor around 1."""
-    if limit == 0.0:
-        return _uniform(1.0, 1.0)
-    steps = np.linspace(-SIGMAS, SIGMAS, _EDGES)
-    below = np.array([0.5 + 0.5 * erf(z / sqrt(2.0)) / erf(SIGMAS / sqrt(2.0)) for z in steps])
-    middles = SIGMAS * ((2.0 * np.arange(_CELLS) + 1.0) / _CELLS - 1.0)
-    weights = np.array([exp(-z * z / 2.0) for z in middles])
-    sigma = limit / SIGMAS
-    return _Factor(1.0 + sigma * steps, below, 1.0 + sigma * middles, weights / weights.sum())
+def _hopeless(output: str, value: float, ends: tuple[float, float], slots: int) -> Reading:
+    """Return the reading of a time that never ends, hardly ends, or never starts."""
+    high = ends[1] if isfinite(ends[1]) and isfinite(value) else None
+    return Reading(output, value, ends[0], high, inf, inf, (1.0,) * slots)

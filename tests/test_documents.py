@@ -11,8 +11,10 @@ import sys
 from pathlib import Path
 
 import pytest
+import typer
 
 from chooser.circuits.timers import timer_names
+from chooser.cli.app import app
 from chooser.errors import Exit
 from chooser.search.terms import NEAREST, Rank, Rule
 from chooser.sheets.columns import COLUMNS
@@ -42,7 +44,7 @@ def run(line: str, db: Path) -> subprocess.CompletedProcess[str]:
 
 def test_every_example_of_the_readme_runs_in_order(tmp_path):
     lines = console_lines()
-    assert len(lines) == 9
+    assert len(lines) == 14
     for line in lines:
         done = run(line, tmp_path / "stock.db")
         assert done.returncode == 0, (line, done.stderr)
@@ -100,11 +102,15 @@ def test_every_room_is_on_the_map(room):
 
 
 def commands() -> list[list[str]]:
-    return [
-        ["fit", "monostable"],
-        *(["stock", name] for name in ("load", "add", "list")),
-        *(["db", name] for name in ("where", "backup", "upgrade")),
-    ]
+    """Every command of every group, as the program itself has them."""
+    groups = typer.main.get_command(app).commands
+    return [[group, name] for group, inside in groups.items() for name in inside.commands]
+
+
+def test_there_are_commands():
+    known = (["fit", "monostable"], ["stock", "load"], ["stock", "add"], ["stock", "list"])
+    assert all(command in commands() for command in known)
+    assert all(["db", name] in commands() for name in ("where", "backup", "upgrade"))
 
 
 @pytest.mark.parametrize("command", commands(), ids=" ".join)

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import typer
 
-from chooser.cli import db, fit, stock
+from chooser.cli import check, db, fit, stock
 from chooser.cli.boundary import Boundary, say
 
 app = typer.Typer(
@@ -18,6 +18,7 @@ app = typer.Typer(
     context_settings={"help_option_names": ["-h", "--help"]},
 )
 app.add_typer(fit.app, name="fit")
+app.add_typer(check.app, name="check")
 app.add_typer(stock.app, name="stock")
 app.add_typer(db.app, name="db")
 

@@ -1,13 +1,16 @@
-"""`chooser fit`: ranked fits for a wanted interval."""
+"""`chooser fit`: ranked fits for a wanted interval, a command for each circuit family."""
 
 from __future__ import annotations
 
-from pathlib import Path
-from typing import Annotated
+from functools import partial
+from typing import Annotated, Any
 
 import typer
 
+from chooser.cli.composing import REQUIRED, Parameter, composed
+from chooser.cli.families import FAMILIES, Family
 from chooser.cli.options import Db, Json, Stock
+from chooser.cli.supporting_options import supporting_parameters, wish_of
 from chooser.search.terms import NEAREST, REASONS, Rank, Rule
 
 app = typer.Typer(
@@ -16,28 +19,6 @@ app = typer.Typer(
     no_args_is_help=True,
 )
 
-Target = Annotated[
-    str, typer.Argument(metavar="TARGET", help="The interval wanted: 90s, 1.5min, 12ms, 1:30.")
-]
-Supply = Annotated[str, typer.Option("--supply", metavar="VOLT", help="Supply of the timer.")]
-TimerName = Annotated[
-    str,
-    typer.Option(
-        "--timer",
-        metavar="ideal|bipolar|cmos|TYPE",
-        help="The timer: a generic one, a type number such as NE555 or TLC555, or ideal, which "
-        "is the textbook formula and nothing else.",
-    ),
-]
-TimerFile = Annotated[
-    Path | None,
-    typer.Option(
-        "--timer-file",
-        metavar="FILE",
-        help="A TOML file with timer types of your own.",
-        show_default=False,
-    ),
-]
 Within = Annotated[
     str, typer.Option("--within", metavar="PERCENT", help="Accepted band to either side.")
 ]
@@ -89,55 +70,59 @@ def fit() -> None:
     """Find the parts for an interval in your stock."""
 
 
-@app.command()
-def monostable(
-    target: Target,
-    *,
-    supply: Supply = "9V",
-    timer: TimerName = "bipolar",
-    within: Within = "2%",
-    rank: RankBy = Rank.BALANCED,
-    boards: Boards = 1,
-    most_resistors: MostResistors = 3,
-    most_capacitors: MostCapacitors = 2,
-    allow: Allow = None,
-    top: Top = 10,
-    why: Why = False,
-    stock: Stock = None,
-    db: Db = None,
-    timer_file: TimerFile = None,
-    as_json: Json = False,
-) -> None:
-    """Fit a one-shot: one interval after a trigger, made by one R and one C.
+SEARCH = (
+    Parameter("within", Within, "2%"),
+    Parameter("rank", RankBy, Rank.BALANCED),
+    Parameter("boards", Boards, 1),
+    Parameter("most_resistors", MostResistors, 3),
+    Parameter("most_capacitors", MostCapacitors, 2),
+    Parameter("allow", Allow),
+    Parameter("top", Top, 10),
+    Parameter("why", Why, default=False),
+    Parameter("stock", Stock),
+    Parameter("db", Db),
+    Parameter("as_json", Json, default=False),
+)
 
-    \b
-    Example: chooser fit monostable 90s --stock sample_inventory
-    Example: chooser fit monostable 12ms --timer TLC555 --supply 5V --boards 4 --rank error
-    """
-    from chooser.circuits.timers import timer_named
+
+def _parameters(family: Family) -> tuple[Parameter, ...]:
+    target: tuple[Parameter, ...] = ()
+    if family.argument:
+        argument = typer.Argument(metavar="TARGET", help=family.argument)
+        target = (Parameter("target", Annotated[str, argument], REQUIRED),)
+    supporting = supporting_parameters(family)
+    return (*target, *family.wishes, *family.device, *supporting, *SEARCH)
+
+
+def _run(family: Family, options: dict[str, Any]) -> None:
+    """Answer one command."""
     from chooser.cli.fit_view import finish, print_answer
     from chooser.cli.stock_source import holdings_from
-    from chooser.errors import BadRequestError
-    from chooser.quantities import is_range, parse_duration, parse_percent, parse_voltage
+    from chooser.quantities import parse_percent
     from chooser.search.find import find_fits
     from chooser.search.request import Request
 
-    if is_range(target):
-        raise BadRequestError(
-            f"{target!r} is a range; name the one interval that is wanted, such as 30s."
-        )
+    options = {**options, "fits": True}
+    circuit = family.circuit(options)
+    wish = wish_of(options, circuit)
     request = Request(
-        target=parse_duration(target),
-        timer=timer_named(timer, timer_file),
-        supply=parse_voltage(supply),
-        within=parse_percent(within),
-        rank=rank,
-        top=top,
-        boards=boards,
-        most_resistors=most_resistors,
-        most_capacitors=most_capacitors,
-        lifted=frozenset(allow or ()),
+        circuit,
+        family.targets(options, circuit),
+        within=parse_percent(options["within"]),
+        rank=options["rank"],
+        top=options["top"],
+        boards=options["boards"],
+        most_resistors=options["most_resistors"],
+        most_capacitors=options["most_capacitors"],
+        lifted=frozenset(options["allow"] or ()),
     )
-    answer = find_fits(holdings_from(stock, db), request)
-    print_answer(answer, as_json=as_json, with_reasons=why)
-    finish(answer)
+    stock = holdings_from(options["stock"], options["db"])
+    answer = find_fits(stock, request)
+    supporting = wish.picked(answer, stock) if wish else None
+    print_answer(answer, supporting, as_json=options["as_json"], with_reasons=options["why"])
+    finish(answer, supporting)
+
+
+for _family in FAMILIES:
+    _text = f"Fit {_family.summary}.\n\n\b\nExample: chooser fit {_family.fit}"
+    app.command(_family.name)(composed(partial(_run, _family), _parameters(_family), _text))

@@ -4,104 +4,109 @@ from __future__ import annotations
 
 import shutil
 import sys
-import textwrap
-from collections import Counter
 from collections.abc import Sequence
 from dataclasses import dataclass
-from typing import Any
 
 import typer
 
 from chooser import quantities
 from chooser.cautions import Caution, Code
+from chooser.cli.fit_json import answer_json
 from chooser.cli.stock_view import print_json, value_text
+from chooser.cli.supporting_view import supporting_json, supporting_lines
 from chooser.cli.tables import print_line, table_lines, visible
+from chooser.cli.words import FAR, chance_text, output_text, picked, standing_lines, wrapped
 from chooser.errors import Exit
-from chooser.networks import Network, members, write_network
+from chooser.interval import Reading
+from chooser.networks import write_network
 from chooser.parts import Holding
-from chooser.search.fits import parts_in
-from chooser.search.request import Answer, Fit
+from chooser.search.request import Answer, Fit, Request, Target
+from chooser.supporting.picking import Supporting
 
-HEADINGS = ("fit", "interval", "error", "parts", "in the band", "worst case", "watch")
-RIGHT = ("fit", "interval", "error", "parts", "in the band")
 INDENT = "     "
+TOO_FAST = (Code.SHORT_INTERVAL, Code.FREQUENCY_LIMIT)
 NEAREST_SHOWN = 3
 """Fits shown where all miss the band."""
 
-FAR = 10.0
-"""Ratio of interval and target from which an error is told as a factor."""
-
 PPM = 1e-6
-SAFETY = (
-    "Check the built circuit with a watch or counter. Not for anything where a wrong interval can "
-    "hurt; mains loads only over a rated, enclosed relay, wired by a qualified person under local "
-    "codes."
-)
+TO_TIME = (5.0, 120.0)
+"""Seconds that are worth timing and not too long to wait for."""
 
 
-def print_answer(answer: Answer, *, as_json: bool, with_reasons: bool) -> None:
-    """Print an answer on stdout."""
+def print_answer(
+    answer: Answer, supporting: Supporting | None = None, *, as_json: bool, with_reasons: bool
+) -> None:
+    """Print an answer on stdout, with the supporting parts of its first fit where asked."""
     if as_json:
-        print_json(answer_json(answer))
+        print_json(answer_json(answer) | supporting_json(supporting))
         return
     width = shutil.get_terminal_size().columns if sys.stdout.isatty() else None
-    for line in answer_lines(answer, width, with_reasons=with_reasons):
+    below = supporting_lines(supporting, width)
+    for line in answer_lines(answer, width, below, with_reasons=with_reasons):
         print_line(line)
 
 
-def finish(answer: Answer) -> None:
+def finish(answer: Answer, supporting: Supporting | None = None) -> None:
     """End the process with the status that says whether the stock can do it."""
-    if not any(fit.in_band for fit in answer.fits):
+    short = supporting is not None and supporting.missing
+    if short or not any(fit.in_band for fit in answer.fits):
         raise typer.Exit(int(Exit.STOCK_SHORT))
 
 
-def answer_lines(answer: Answer, width: int | None, *, with_reasons: bool) -> list[str]:
+def answer_lines(
+    answer: Answer, width: int | None, below: Sequence[str] = (), *, with_reasons: bool
+) -> list[str]:
     """Lay an answer out for a person.
 
     Parameters
     ----------
     answer : what was found.
     width : columns of the terminal, or None where lines may be as long as they need.
+    below : what stands right below the table.
     with_reasons : whether each fit says why it ranks before the next.
     """
-    lines = [*_wrapped(_heading(answer), width)]
+    lines = [*wrapped(_heading(answer), width)]
     shown = _shown(answer)
     notes = _notes(shown)
     if shown:
-        table = table_lines(HEADINGS, [_row(*pair, notes) for pair in shown], RIGHT)
+        headings = _headings(answer)
+        rows = [_row(number, fit, answer.request, notes) for number, fit in shown]
+        table = table_lines(headings, rows, headings[:-2])
         folded = width is not None and max(map(len, table)) > width
         lines += ["", *([] if folded else table[:1])]
         for (number, fit), row in zip(shown, table[1:], strict=True):
-            lines += _folded(number, fit, notes, width) if folded else [row]
+            lines += _folded(number, fit, answer.request, notes, width) if folded else [row]
             lines += _networks(fit, width)
+            lines += _divided(fit, answer.request, width)
             if with_reasons:
                 lines += _reasons(fit, width)
-        lines.append("")
+        lines += ["", *below]
     for note in notes.values():
-        lines += _wrapped(str(note), width, hanging="   ")
+        lines += wrapped(str(note), width, hanging="   ")
     if not with_reasons and any(len(fit.cautions) > 1 for _, fit in shown):
-        lines += _wrapped("+n  so many further cautions; --why spells them out.", width)
+        lines += wrapped("+n  so many further cautions; --why spells them out.", width)
     if not any(fit.in_band for fit in answer.fits):
-        lines += _wrapped(_nothing(answer), width)
-    for sentence in answer.advice:
-        lines += _wrapped(sentence, width)
+        lines += wrapped(_nothing(answer), width)
+    for sentence in (*answer.advice, *answer.ways_out):
+        lines += wrapped(sentence, width)
     # Where nothing was searched, rules for networks kept nothing out.
     refusals = [each for each in answer.refusals if each.holdings or answer.searched.combinations]
     if refusals:
-        lines += _wrapped("By the house rules (--allow RULE lifts one):", width)
+        lines += wrapped("By the house rules (--allow RULE lifts one):", width)
     for refusal in refusals:
-        lines += _wrapped(f"{refusal.rule}: {refusal.why}", width, "  ", "    ")
-    lines += _wrapped(_searched(answer), width)
-    return [*lines, *(_wrapped(SAFETY, width) if answer.fits else [])]
+        lines += wrapped(f"{refusal.rule}: {refusal.why}", width, "  ", "    ")
+    lines += wrapped(_searched(answer), width)
+    timed = answer.request.circuit.device or answer.request.circuit.outputs[0] == "interval"
+    return [*lines, *(standing_lines(width) if answer.fits and timed else [])]
 
 
 def _reasons(fit: Fit, width: int | None) -> list[str]:
     """Say the further cautions, and why the fit ranks before the next."""
     lines = []
     for caution in fit.cautions[1:]:
-        lines += _wrapped(f"also {caution.code}: {caution.text}", width, INDENT, INDENT + "    ")
+        lines += wrapped(f"also {caution.code}: {caution.text}", width, INDENT, INDENT + "    ")
     if fit.why:
-        lines += _wrapped(f"before the next: {fit.why}", width, INDENT)
+        lines += wrapped(f"before the next: {fit.why}", width, INDENT)
     return lines
 
 
@@ -113,15 +118,27 @@ def _shown(answer: Answer) -> list[tuple[int, Fit]]:
 
 def _heading(answer: Answer) -> str:
     request = answer.request
-    low, high = (quantities.format_duration(end, digits=6) for end in request.band)
+    circuit = request.circuit
+    wishes = ", ".join(_wish_text(target, request) for target in request.targets)
+    where = f", {circuit.device} at {quantities.format_voltage(circuit.supply)}"
     boards = "" if request.boards == 1 else f", {request.boards} boards"
-    timer = f"{request.timer.name} timer"
-    supply = quantities.format_voltage(request.supply)
-    return (
-        f"One-shot of {quantities.format_duration(request.target)} within "
-        f"{quantities.format_percent(request.within)} ({low} to {high}), "
-        f"{timer} at {supply}{boards}."
-    )
+    return f"{circuit.title} of {wishes}{where if circuit.device else ''}{boards}."
+
+
+def _wish_text(target: Target, request: Request) -> str:
+    """Say what is wanted of an output, and what is accepted."""
+    low, high = (output_text(target.output, end, digits=6) for end in target.band(request.within))
+    if target.frequency is not None:
+        asked = quantities.format_frequency(target.frequency)
+        return f"{asked} within {quantities.format_percent(request.within)} ({low} to {high})"
+    if target.is_free:
+        return "any duty"
+    name = "" if target.output == request.circuit.outputs[0] else f"{target.output} "
+    if target.is_range:
+        return f"{name}{low} to {high}"
+    wanted = output_text(target.output, target.low)
+    band = quantities.format_percent(request.within)
+    return f"{name}{wanted} within {band} ({low} to {high})"
 
 
 @dataclass(frozen=True, slots=True)
@@ -151,71 +168,119 @@ def _letter(number: int) -> str:
     return name if number < 26 else _letter(number // 26 - 1) + name  # noqa: PLR2004
 
 
-def _row(number: int, fit: Fit, notes: dict[Code, _Note]) -> list[str]:
+def _headings(answer: Answer) -> tuple[str, ...]:
+    outputs = [_shown_output(target) for target in answer.request.targets]
+    if answer.request.circuit.variants[0].name:
+        outputs.append("output")
+    return ("fit", *outputs, "error", "parts", "in the band", "worst case", "watch")
+
+
+def _row(number: int, fit: Fit, request: Request, notes: dict[Code, _Note]) -> list[str]:
     out = fit.outlook
     mark = notes[fit.cautions[0].code].letter if fit.cautions else ""
     if len(fit.cautions) > 1:
         mark += f" +{len(fit.cautions) - 1}"
     return [
         str(number),
-        quantities.format_duration(out.nominal, digits=4),
-        _error_text(fit),
-        str(parts_in(fit)),
+        *(
+            output_text(output, out.of(output).nominal, digits=4)
+            for output in map(_shown_output, request.targets)
+        ),
+        *((fit.variant.name,) if fit.variant.name else ()),
+        _error_text(fit, _shown_error(fit, request)),
+        str(fit.parts),
         "unknown" if _too_short(fit) else chance_text(out.chance),
-        _worst_case(fit),
+        _worst_case(fit, request),
         mark,
     ]
 
 
 def _too_short(fit: Fit) -> bool:
     """Tell whether the timer's own delays rule: then the formula says nothing of the odds."""
-    return any(caution.code is Code.SHORT_INTERVAL for caution in fit.cautions)
+    return any(caution.code in TOO_FAST for caution in fit.cautions)
 
 
-def _error_text(fit: Fit) -> str:
+def _shown_output(target: Target) -> str:
+    """Return the output that is shown for a target: a frequency where it was asked for."""
+    return target.output if target.frequency is None else "frequency"
+
+
+def _shown_error(fit: Fit, request: Request) -> float:
+    """Return the error to show: of a frequency that was asked for, the frequency's."""
+    for target in request.targets:
+        if target.frequency is not None and fit.errors[target.output] == fit.error:
+            return fit.outlook.of("frequency").nominal / target.frequency - 1
+    return fit.error
+
+
+def _error_text(fit: Fit, error: float) -> str:
     """Write an error so that the column can be compared; far ones as a factor."""
-    percent = fit.error * 100
-    if fit.error >= FAR - 1:
-        return f"{fit.error + 1:,.0f} x too long"
-    if fit.error <= 1 / FAR - 1:
-        return f"{1 / (fit.error + 1):,.0f} x too short"
-    if abs(fit.error) < PPM / 2:
+    percent = error * 100
+    if error >= FAR - 1:
+        return f"{error + 1:,.0f} x too {_far_words(fit)[1]}"
+    if error <= 1 / FAR - 1:
+        return f"{1 / (error + 1):,.0f} x too {_far_words(fit)[0]}"
+    if abs(error) < PPM / 2:
         return "0%"
     written = f"{percent:+.2f}%" if abs(percent) >= 0.005 else f"{percent:+.4f}%"  # noqa: PLR2004
     return written if fit.in_band else f"{written} out"
 
 
-def chance_text(chance: float) -> str:
-    """Write a probability as people count: boards of ten or of a hundred."""
-    if chance >= 0.995:  # noqa: PLR2004 - rounds to all of them
-        return "nearly all"
-    if chance < 0.005:  # noqa: PLR2004 - rounds to none
-        return "hardly any"
-    return f"{round(chance * 100)} of 100"
+def _far_words(fit: Fit) -> tuple[str, str]:
+    """Return what too little and too much are called of the chief output."""
+    timed = fit.outlook.chief.output in ("interval", "period")
+    return ("short", "long") if timed else ("small", "large")
 
 
-def _worst_case(fit: Fit) -> str:
-    low = quantities.format_duration(fit.outlook.low, digits=3)
-    high = fit.outlook.high
-    return f"{low} to {'never' if high is None else quantities.format_duration(high, digits=3)}"
+def _worst_case(fit: Fit, request: Request) -> str:
+    """Say the ends of every output that was asked for, but for a duty that may be anything."""
+    outputs = [_shown_output(target) for target in request.targets if not target.is_free]
+    return ", ".join(_ends(fit.outlook.of(output)) for output in outputs)
 
 
-def _folded(number: int, fit: Fit, notes: dict[Code, _Note], width: int | None) -> list[str]:
+def _ends(reading: Reading) -> str:
+    low = output_text(reading.output, reading.low, digits=3) if reading.low > 0 else "stops"
+    high = "never" if reading.high is None else output_text(reading.output, reading.high, digits=3)
+    return f"{low} to {high}"
+
+
+def _folded(
+    number: int, fit: Fit, request: Request, notes: dict[Code, _Note], width: int | None
+) -> list[str]:
     """Write the row as a sentence, for terminals too narrow for the table."""
-    _, interval, error, parts, chance, worst, mark = _row(number, fit, notes)
+    _, *outputs, error, parts, chance, worst, mark = _row(number, fit, request, notes)
     watch = f", watch {mark}" if mark else ""
-    text = f"{number}. {interval} ({error}), {parts} parts, {chance} in the band, {worst}{watch}"
-    return _wrapped(text, width, hanging=INDENT)
+    text = (
+        f"{number}. {', '.join(outputs)} ({error}), {parts} parts, {chance} in the band, "
+        f"{worst}{watch}"
+    )
+    return wrapped(text, width, hanging=INDENT)
 
 
 def _networks(fit: Fit, width: int | None) -> list[str]:
     """Say how the parts are joined, and from which drawers they come."""
     lines = []
-    for slot, network in (("R", fit.resistor), ("C", fit.capacitor)):
-        text = write_network(network, lambda h: value_text(h.part, h.part.effective))
-        picks = "; ".join(_pick_text(holding, count) for holding, count in picked(network))
-        lines += _wrapped(f"{slot} = {text}   from {picks}", width, INDENT, INDENT + "    ")
+    for slot in fit.slots:
+        text = write_network(slot.network, lambda h: value_text(h.part, h.part.effective))
+        picks = "; ".join(_pick_text(holding, count) for holding, count in picked(slot.network))
+        lines += wrapped(f"{slot.name} = {text}   from {picks}", width, INDENT, INDENT + "    ")
     return lines
+
+
+def _divided(fit: Fit, request: Request, width: int | None) -> list[str]:
+    """Say how fast a counter's oscillator runs, and which outputs tell it sooner."""
+    if not fit.variant.name:
+        return []
+    period = fit.outlook.chief.nominal / fit.variant.scale
+    text = f"oscillator {quantities.format_duration(period, digits=4)}"
+    times = [(tap.name, period * tap.scale) for tap in request.circuit.taps]
+    early = [each for each in times if TO_TIME[0] <= each[1] <= TO_TIME[1]][-2:]
+    if early and fit.outlook.chief.nominal > TO_TIME[1]:
+        told = ", ".join(
+            f"{name} after {quantities.format_duration(time, digits=4)}" for name, time in early
+        )
+        text += f"; to time it sooner, after a reset these rise first: {told}"
+    return wrapped(text, width, INDENT, INDENT + "    ")
 
 
 def _pick_text(holding: Holding, count: int) -> str:
@@ -231,13 +296,6 @@ def _pick_text(holding: Holding, count: int) -> str:
     return f"{visible(holding.drawer)}: {' '.join(word for word in words if word)}"
 
 
-def picked(network: Network[Holding]) -> list[tuple[Holding, int]]:
-    """Return each holding of a network once, with how often a board takes from it."""
-    by_id = {holding.id: holding for holding in members(network)}
-    counts = Counter(holding.id for holding in members(network))
-    return [(by_id[number], count) for number, count in counts.items()]
-
-
 def _nothing(answer: Answer) -> str:
     if not answer.fits:
         return "Nothing in this stock makes such an interval."
@@ -251,82 +309,3 @@ def _searched(answer: Answer) -> str:
     noun = "circuit" if searched.combinations == 1 else "circuits"
     how = searched.limit or "exact: no circuit of the space is better placed"
     return f"Searched {searched.combinations:,} {noun} in {searched.seconds:.2g} s; {how}."
-
-
-def _wrapped(
-    text: str, width: int | None, indent: str = "", hanging: str | None = None
-) -> list[str]:
-    if width is None:
-        return [indent + text]
-    return textwrap.wrap(
-        text,
-        max(width, 20),
-        initial_indent=indent,
-        subsequent_indent=indent if hanging is None else hanging,
-        break_on_hyphens=False,
-    )
-
-
-def answer_json(answer: Answer) -> dict[str, Any]:
-    """Give an answer as JSON has it: SI units, fractions."""
-    request, searched = answer.request, answer.searched
-    return {
-        "circuit": "monostable",
-        "targets": {"interval": request.target},
-        "within": request.within,
-        "timer": request.timer.name,
-        "supply": request.supply,
-        "boards": request.boards,
-        "rank": str(request.rank),
-        "searched": {
-            "combinations": searched.combinations,
-            "complete": searched.complete,
-            "seconds": round(searched.seconds, 6),
-            **({"limit": searched.limit} if searched.limit else {}),
-        },
-        "fits": [fit_json(fit, request.target, request.boards) for fit in answer.fits],
-        "left_out": [
-            {"rule": str(each.rule), "text": each.why, "holdings": list(each.holdings)}
-            for each in answer.refusals
-        ],
-        "advice": list(answer.advice),
-    }
-
-
-def fit_json(fit: Fit, target: float, boards: int) -> dict[str, Any]:
-    """Give one fit as JSON has it; the picks are for all boards together."""
-    out = fit.outlook
-    return {
-        "parts": parts_in(fit),
-        "outputs": {
-            "interval": {
-                "target": target,
-                "nominal": out.nominal,
-                "error": fit.error,
-                "mean": out.mean,
-                "low": out.low,
-                "high": out.high,
-            }
-        },
-        "in_band": fit.in_band,
-        "spread": out.spread,
-        "chance": out.chance,
-        "likely_miss": fit.likely_miss,
-        "slots": {
-            "R": _slot_json(fit.resistor, fit.resistance, boards),
-            "C": _slot_json(fit.capacitor, fit.capacitance, boards),
-        },
-        "cautions": [{"code": str(each.code), "text": each.text} for each in fit.cautions],
-        "why": fit.why,
-    }
-
-
-def _slot_json(network: Network[Holding], value: float, boards: int) -> dict[str, Any]:
-    return {
-        "network": write_network(network, lambda h: value_text(h.part, h.part.effective)),
-        "value": value,
-        "picks": [
-            {"holding": holding.id, "drawer": holding.drawer, "count": count * boards}
-            for holding, count in picked(network)
-        ],
-    }

@@ -1,14 +1,16 @@
 """Reading a part as a person says it in one breath: "10k 1% metal film", "4u7 63 V polyester".
 
 Words in any order: a value, a tolerance, a voltage, a power, a tempco, a taper, the kind and the
-technology, each read as in the cell of a sheet. Nothing is guessed: a value that may be ohms or
-farads needs its kind said.
+technology, each read as in the cell of a sheet; and "measured 96n 2%" and "leakage 3uA", where
+the figure follows its word (the percentage is the meter's, and may be left out). Nothing is
+guessed: a value that may be ohms or farads needs its kind said.
 """
 
 from __future__ import annotations
 
 import re
-from collections.abc import Callable, Mapping
+from collections import deque
+from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass, replace
 from functools import partial
 from typing import Any
@@ -28,13 +30,24 @@ _FORMS: tuple[tuple[str, re.Pattern[str]], ...] = (
     ("tempco", re.compile(r"[\d.,]+ppm(/[KC])?", re.IGNORECASE)),
     ("value", re.compile(r"[.,]?\d.*|[RrNnUuPp\u00b5\u03bc]\d.*")),
 )
+# Words that say what the figure behind them is, and the form of that figure; a low leakage
+# electrolytic with its voltage behind is none of them.
+_ANNOUNCED = {
+    "measured": ("measured", re.compile(r"\S+")),
+    "measures": ("measured", re.compile(r"\S+")),
+    "reads": ("measured", re.compile(r"\S+")),
+    "leakage": ("leakage", re.compile(r"[\d.,]+[munp\u00b5\u03bc]?A", re.IGNORECASE)),
+    "leaks": ("leakage", re.compile(r"\S+")),
+}
+_PERCENT = re.compile(r"(?:±|\+/?-)?[\d.,]+%")
 # Without a word for it, only these may be farads; 10K is ohms to everybody, though on a small
 # ceramic it could be 10 pF with its tolerance letter.
 _FARADS = re.compile(r"[pnuf\u00b5\u03bc]|^\d+$|^\d{3}[a-z]$", re.IGNORECASE)
 # A unit typed apart from its number: "10 k", "4.7 uF", "63 V", "1 %", "10 k ohm".
 _UNIT_APART = re.compile(
     r"(?<=\d)\s+(?=%|[kKMuUnNpP\u00b5\u03bc]?(?:\s?[\u03a9\u2126]|\s?ohms?\b|F\b)"
-    r"|[kKMunp\u00b5\u03bc](?:\s|$)|k?V\b|m?W\b|ppm)"
+    r"|[kKMunp\u00b5\u03bc](?:\s|$)|k?V\b|m?W\b|[mun\u00b5\u03bc]?A\b|ppm)"
+    r"|(?:(?<=±)|(?<=/-)|(?<=\+-))\s+(?=[\d.,]+\s?%)"
 )
 _OHM_APART = re.compile(r"(?<=\d[kKMR])\s+(?=[\u03a9\u2126]|ohms?\b)", re.IGNORECASE)
 
@@ -87,7 +100,7 @@ def read_part(text: str, kind: Kind | None = None, said: Mapping[str, str] | Non
     words = _sorted_words(text)
     texts = words.traits | dict(said or {})
     if "value" not in texts:
-        raise BadRequestError(f"{text!r} holds no value; write one such as 10k, 4u7 or 100n.")
+        raise _valueless(text, words.technology, kind or words.kind)
     technology = texts.pop("technology", words.technology)
     marking = texts.pop("value")
     kind = _kind_of(marking, technology, _agreed(kind, words.kind, text))
@@ -100,11 +113,23 @@ def read_part(text: str, kind: Kind | None = None, said: Mapping[str, str] | Non
     return _sensible(replace(part, **fields), cell.tolerance, texts)
 
 
+def _valueless(text: str, rest: str, kind: Kind | None) -> BadRequestError | UnreadableValueError:
+    """Say that there is no value, with what a word that is nearly one was meant to be."""
+    for word in rest.split():
+        try:
+            traits.read_value(word, kind or Kind.RESISTOR)
+        except UnreadableValueError as error:
+            if error.advice.startswith("perhaps"):
+                return error
+    return BadRequestError(f"{text!r} holds no value; write one such as 10k, 4u7 or 100n.")
+
+
 def _sorted_words(text: str) -> _Words:
     kind: Kind | None = None
     found: dict[str, str] = {}
     rest: list[str] = []
-    for word in _OHM_APART.sub("", _UNIT_APART.sub("", text)).replace(", ", " ").split():
+    words = _OHM_APART.sub("", _UNIT_APART.sub("", text)).replace(", ", " ").split()
+    for word in _unannounced(words, found, text):
         called = _read_or_none(traits.read_kind, word)
         trait = _trait_of(word)
         if called is not None:
@@ -112,13 +137,39 @@ def _sorted_words(text: str) -> _Words:
         elif trait is None:
             rest.append(word)
         elif trait in found:
-            raise BadRequestError(
-                f"{text!r} gives two readings for the {trait}, {found[trait]} and {word}; "
-                "write one of them."
-            )
+            raise _two_readings(text, trait, found[trait], word)
         else:
             found[trait] = word
+    # A piece that was only measured is worth what was measured.
+    if "measured" in found:
+        found.setdefault("value", found["measured"])
     return _Words(kind, found, " ".join(rest))
+
+
+def _unannounced(words: list[str], found: dict[str, str], text: str) -> Iterator[str]:
+    """Yield the words that speak for themselves; the others go to `found` with their figures."""
+    left = deque(words)
+    while left:
+        word = left.popleft()
+        announced = _ANNOUNCED.get(word.casefold().rstrip(":"))
+        if not left and announced is not None and announced[0] == "measured":
+            raise BadRequestError(f"{text!r} says {word!r} without a figure; write it behind.")
+        if announced is None or not left or not announced[1].fullmatch(left[0]):
+            yield word
+            continue
+        trait = announced[0]
+        figure = left.popleft()
+        if trait in found:
+            raise _two_readings(text, trait, found[trait], figure)
+        found[trait] = figure
+        if trait == "measured" and left and _PERCENT.fullmatch(left[0]):
+            found["meter"] = left.popleft().lstrip("±+/-")
+
+
+def _two_readings(text: str, trait: str, one: str, other: str) -> BadRequestError:
+    return BadRequestError(
+        f"{text!r} gives two readings for the {trait}, {one} and {other}; write one of them."
+    )
 
 
 def _trait_of(word: str) -> str | None:

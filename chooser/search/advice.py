@@ -4,14 +4,17 @@ from __future__ import annotations
 
 from collections.abc import Collection, Sequence
 
+import numpy as np
+
 from chooser.cautions import SMALL_CURRENT
-from chooser.circuits.leakage import leak_conductance, taken_for
-from chooser.circuits.monostable import resistance, typical
 from chooser.parts import Holding, Kind
-from chooser.search.house_rules import LEAST_FARAD, Usable, leak_bound, resistor_limits
+from chooser.search.house_rules import Usable, resistor_bounds
 from chooser.search.purchase import one_purchase
 from chooser.search.request import Fit, Request
+from chooser.search.slots import charging_bounds, leak_of
 from chooser.search.terms import USUAL_PARTS, Rule
+from chooser.search.wanted import charging_of, wanted_resistances
+from chooser.technologies import taken_for
 
 FURTHER = "divide a shorter interval with an oscillator and a counter"
 """What is left where neither parts nor timer reach so far."""
@@ -48,10 +51,14 @@ def advice_for(
         return ()
     if not stock:
         return ("The stock is empty; load a sheet with `chooser stock load FILE`.",)
-    missing = _missing(stock, usable)
+    missing = _missing(stock, usable, request)
     if missing:
         return missing
-    if Rule.STRAYS not in request.lifted and _most_farad(usable, request) < LEAST_FARAD:
+    if (
+        request.circuit.capacitor
+        and Rule.STRAYS not in request.lifted
+        and (_most_farad(usable, request) < request.circuit.least_farad)
+    ):
         return (ALL_SMALL,)
     reason = _out_of_reach(usable, request)
     bought = one_purchase(usable.resistors, usable.capacitors, request)
@@ -72,11 +79,15 @@ def _no_purchase(request: Request) -> str:
     )
 
 
-def _missing(stock: Sequence[Holding], usable: Usable) -> tuple[str, ...]:
+def _missing(stock: Sequence[Holding], usable: Usable, request: Request) -> tuple[str, ...]:
     """Say which kind of part is not there at all, not free, or kept out by the rules."""
     said = []
-    for kind, left in ((Kind.RESISTOR, usable.resistors), (Kind.CAPACITOR, usable.capacitors)):
-        if left:
+    needed = (
+        (Kind.RESISTOR, usable.resistors, bool(request.circuit.resistors)),
+        (Kind.CAPACITOR, usable.capacitors, request.circuit.capacitor),
+    )
+    for kind, left, wanted in needed:
+        if left or not wanted:
             continue
         there = [holding for holding in stock if holding.part.kind is kind]
         free = [holding for holding in there if holding.free is None or holding.free > 0]
@@ -99,33 +110,32 @@ def _most_farad(usable: Usable, request: Request) -> float:
 
 def _out_of_reach(usable: Usable, request: Request) -> tuple[str, ...]:
     """Say so where every capacitor wants a resistance outside the rules' limits."""
-    drive = typical(request.timer, request.supply)
-    least, most = resistor_limits(request)
-    wishes: list[tuple[float, float]] = []
-    for holding in usable.capacitors:
-        farad = holding.part.effective
-        if farad < LEAST_FARAD and Rule.STRAYS not in request.lifted:
-            continue
-        leak = 0.0
-        if not request.timer.ideal:
-            leak = leak_conductance(holding.part, request.supply).typical
-        wanted = float(resistance(request.target, farad, leak, drive))
-        wishes.append((wanted, min(most, float(leak_bound(leak, drive)))))
-    if wishes and all(wanted > bound for wanted, bound in wishes):
+    circuit = request.circuit
+    parts = [holding.part for holding in usable.capacitors]
+    if Rule.STRAYS not in request.lifted:
+        parts = [part for part in parts if part.effective >= circuit.least_farad]
+    if not parts or not circuit.resistors:
+        return ()
+    farad = np.array([part.effective for part in parts])
+    leak = np.array([leak_of(part, request) for part in parts])
+    rs = wanted_resistances(request, farad, leak)
+    least, most = charging_bounds(leak, request)
+    if np.all(charging_of(circuit, rs) > most):
         return (_too_long(usable, request),)
-    if wishes and all(wanted < least for wanted, _ in wishes):
-        return (_too_short(usable),)
+    if np.all(np.min(rs, axis=0) < least):
+        return (_too_short(usable, request),)
     return ()
 
 
-def _too_short(usable: Usable) -> str:
+def _too_short(usable: Usable, request: Request) -> str:
     """Name the way out of an interval that is too short."""
     smallest = min(holding.part.effective for holding in usable.capacitors)
     way = "take a smaller capacitor"
     if smallest <= SMALL_ENOUGH:
         way = "so short an interval needs a faster timer or a logic one-shot"
     return (
-        f"Every capacitor here would need a resistor below what the discharge pin can carry; {way}."
+        f"Every capacitor here would need a resistor below what the {request.circuit.device} "
+        f"allows ({resistor_bounds(request).least_why}); {way}."
     )
 
 
@@ -137,10 +147,11 @@ def _too_long(usable: Usable, request: Request) -> str:
         ways.append("a larger capacitor")
     elif taken_for(best.part) in LEAKY:
         ways.append("a capacitor that leaks less (film, low-leakage)")
-    if request.timer.threshold_current_limit > SMALL_CURRENT:
+    timer = request.circuit.timer
+    if timer is not None and timer.threshold_current_limit > SMALL_CURRENT:
         ways.append("a CMOS timer")
     return (
-        "Every capacitor here would need a resistor beyond what the timer's currents and the "
-        "leakage allow: such an interval drifts or never ends. Ways out: "
+        "Every capacitor here would need a resistor beyond what the device and the leakage allow: "
+        "such a time drifts or never ends. Ways out: "
         f"{', '.join([*ways, 'or to ' + FURTHER])}."
     )

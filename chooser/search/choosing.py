@@ -2,7 +2,7 @@
 
 Tie-breaks between fits of equal error and parts: how many times the scarcest of the picked
 holdings would allow the fit to be built (more is better), then the ids of the resistors and of
-the capacitors (lower first), and at last the written form.
+the capacitors (lower first), the written form, and at last the variant of the circuit.
 """
 
 from __future__ import annotations
@@ -27,12 +27,13 @@ class Choice:
 
     Attributes
     ----------
-    pairing : the lots. resistor, capacitor : the networks of holding ids, canonical.
+    pairing : the lots.
+    resistors, capacitors : the networks of holding ids of each slot, canonical.
     """
 
     pairing: Pairing
-    resistor: Network[int]
-    capacitor: Network[int]
+    resistors: tuple[Network[int], ...]
+    capacitors: tuple[Network[int], ...]
 
 
 @dataclass(frozen=True, slots=True)
@@ -94,9 +95,10 @@ def best_choice(pairing: Pairing, resistors: Drawers, capacitors: Drawers) -> Ch
 
 def tie_break(choice: Choice, resistors: Drawers, capacitors: Drawers) -> tuple[Any, ...]:
     """Return the part of the sort key that settles equal errors and parts."""
-    ohms, farads = sorted(members(choice.resistor)), sorted(members(choice.capacitor))
+    ohms, farads = sorted(_leaves(choice.resistors)), sorted(_leaves(choice.capacitors))
     plenty = min(_plenty(ohms, resistors), _plenty(farads, capacitors))
-    return (-plenty, ohms, farads, _written(choice.resistor), _written(choice.capacitor))
+    written = [_written(network) for network in (*choice.resistors, *choice.capacitors)]
+    return (-plenty, ohms, farads, written, choice.pairing.variant)
 
 
 def ranked_ways(
@@ -108,23 +110,23 @@ def ranked_ways(
     greatest plenty downwards, only holdings that allow it are looked at, and of these only the
     lowest ids, because a way through a higher id has enough better ones before it.
     """
-    lots = [resistors.lots[lot] for lot in set(members(pairing.resistor))]
-    lots += [capacitors.lots[lot] for lot in set(members(pairing.capacitor))]
+    lots = [resistors.lots[lot] for lot in set(_leaves(pairing.resistors))]
+    lots += [capacitors.lots[lot] for lot in set(_leaves(pairing.capacitors))]
     if all(len(lot.holdings) == 1 for lot in lots):
         yield _only_way(pairing, resistors, capacitors)
         return
     yielded = 0
     for plenty in _plenties(pairing, resistors, capacitors):
         sides = (
-            _sides(pairing.resistor, resistors, plenty, 2 * top),
-            _sides(pairing.capacitor, capacitors, plenty, 2 * top),
+            _sides(pairing.resistors, resistors, plenty, 2 * top),
+            _sides(pairing.capacitors, capacitors, plenty, 2 * top),
         )
         for ohms, farads in product(*sides):
             if min(ohms.plenty, farads.plenty) > plenty:
                 continue  # yielded before
             ways = product(
-                _arranged(pairing.resistor, ohms, resistors),
-                _arranged(pairing.capacitor, farads, capacitors),
+                _arranged(pairing.resistors, ohms, resistors),
+                _arranged(pairing.capacitors, farads, capacitors),
             )
             for resistor, capacitor in ways:
                 yield Choice(pairing, resistor, capacitor)
@@ -136,7 +138,9 @@ def ranked_ways(
 def _only_way(pairing: Pairing, resistors: Drawers, capacitors: Drawers) -> Choice:
     """Return the choice where every lot is one drawer."""
     return Choice(
-        pairing, _in_only(pairing.resistor, resistors), _in_only(pairing.capacitor, capacitors)
+        pairing,
+        tuple(_in_only(network, resistors) for network in pairing.resistors),
+        tuple(_in_only(network, capacitors) for network in pairing.capacitors),
     )
 
 
@@ -146,11 +150,11 @@ def _in_only(network: Network[int], drawers: Drawers) -> Network[int]:
 
 @dataclass(frozen=True, slots=True)
 class _Side:
-    """The holdings that one network takes.
+    """The holdings that the networks of one kind take.
 
     Attributes
     ----------
-    ids : of all of them, rising. picks : by lot. plenty : how often they allow the network.
+    ids : of all of them, rising. picks : by lot. plenty : how often they allow the networks.
     """
 
     ids: tuple[int, ...]
@@ -162,8 +166,8 @@ def _plenties(pairing: Pairing, resistors: Drawers, capacitors: Drawers) -> list
     """Return, falling, how often the scarcest holding of some way may allow the pairing."""
     needs = [
         (drawers.lots[lot].uses, pieces)
-        for network, drawers in ((pairing.resistor, resistors), (pairing.capacitor, capacitors))
-        for lot, pieces in Counter(members(network)).items()
+        for networks, drawers in ((pairing.resistors, resistors), (pairing.capacitors, capacitors))
+        for lot, pieces in Counter(_leaves(networks)).items()
     ]
     found = {_times(uses, k) for lot, pieces in needs for uses in lot for k in range(1, pieces + 1)}
     rising = sorted(found - {0})
@@ -177,9 +181,11 @@ def _plenties(pairing: Pairing, resistors: Drawers, capacitors: Drawers) -> list
     return rising[: bisect_left(rising, x=True, key=too_much)][::-1]
 
 
-def _sides(network: Network[int], drawers: Drawers, plenty: int, count: int) -> list[_Side]:
-    """Return the first sides, by ids, whose every holding allows the network `plenty` times."""
-    leaves = list(members(network))
+def _sides(
+    networks: Sequence[Network[int]], drawers: Drawers, plenty: int, count: int
+) -> list[_Side]:
+    """Return the first sides, by ids, whose every holding allows the networks `plenty` times."""
+    leaves = _leaves(networks)
     different = sorted(set(leaves))
     by_lot = [_picks(drawers.lots[lot], leaves.count(lot), plenty, count) for lot in different]
     joined = (
@@ -206,15 +212,17 @@ def _picks(lot: Lot, pieces: int, plenty: int, count: int) -> list[tuple[int, ..
     ]
 
 
-def _arranged(network: Network[int], side: _Side, drawers: Drawers) -> list[Network[int]]:
+def _arranged(
+    networks: Sequence[Network[int]], side: _Side, drawers: Drawers
+) -> list[tuple[Network[int], ...]]:
     """Return the different ways to put picked holdings on the leaves of their lots, as written."""
     orders = [sorted(set(permutations(numbers))) for numbers in side.picks.values()]
-    found: dict[str, Network[int]] = {}
+    found: dict[tuple[str, ...], tuple[Network[int], ...]] = {}
     for arrangement in product(*orders):
         supply = {lot: iter(row) for lot, row in zip(side.picks, arrangement, strict=True)}
-        settled = _settled(_filled(network, supply), drawers.value)
-        found.setdefault(_written(settled), settled)
-    return [found[text] for text in sorted(found)]
+        settled = tuple(_settled(_filled(each, supply), drawers.value) for each in networks)
+        found.setdefault(tuple(_written(each) for each in settled), settled)
+    return [found[texts] for texts in sorted(found)]
 
 
 def _filled(network: Network[int], supply: Mapping[int, Iterator[int]]) -> Network[int]:
@@ -229,7 +237,12 @@ def _settled(network: Network[int], value: Mapping[int, float]) -> Network[int]:
 
 
 def _plenty(ids: Sequence[int], drawers: Drawers) -> int:
-    return min(_times(drawers.uses[number], ids.count(number)) for number in set(ids))
+    times = (_times(drawers.uses[number], ids.count(number)) for number in set(ids))
+    return min(times, default=PLENTY)
+
+
+def _leaves(networks: Sequence[Network[int]]) -> list[int]:
+    return [leaf for network in networks for leaf in members(network)]
 
 
 def _times(uses: int, pieces: int) -> int:

@@ -105,6 +105,37 @@ def networks_from(uses: Sequence[int], size: int) -> int:
     return sum(multisets_with(pattern, uses) * networks_of(pattern) for pattern in partitions(size))
 
 
+def pairs_from(uses: Sequence[int], most: int) -> int:
+    """Count the ordered pairs of networks of 1 to `most` parts each that share the pieces.
+
+    Parameters
+    ----------
+    uses : how often each holding may be used in both networks together.
+    most : largest number of parts in either network.
+    """
+    return sum(
+        multisets_with(pattern, uses) * _splits_of(pattern, first)
+        for first in range(1, most + 1)
+        for second in range(1, most + 1)
+        for pattern in partitions(first + second)
+    )
+
+
+@cache
+def _splits_of(pattern: Pattern, first: int) -> int:
+    """Count the pairs of networks that use a multiset, `first` pieces of it in the first one."""
+    total = 0
+    for taken in product(*(range(top + 1) for top in pattern)):
+        if sum(taken) == first:
+            rest = tuple(top - own for top, own in zip(pattern, taken, strict=True))
+            total += networks_of(_falling(taken)) * networks_of(_falling(rest))
+    return total
+
+
+def _falling(vector: Pattern) -> Pattern:
+    return tuple(sorted((count for count in vector if count), reverse=True))
+
+
 def networks_from_polarised(free: Sequence[int], polar: Sequence[int], size: int) -> int:
     """Count the capacitor networks of exactly `size` parts with no polarised part in series.
 

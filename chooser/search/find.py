@@ -6,7 +6,6 @@ from collections.abc import Collection, Iterable, Sequence
 from operator import attrgetter
 from time import perf_counter
 
-from chooser.circuits.timers import check_supply
 from chooser.parts import Holding
 from chooser.search.advice import advice_for
 from chooser.search.balanced import BalancedSearch
@@ -20,6 +19,7 @@ from chooser.search.request import Answer, Fit, Request, Searched
 from chooser.search.shortage import shortage
 from chooser.search.space import Space, combinations
 from chooser.search.terms import NEAREST, Rank
+from chooser.search.way_out import way_out
 
 
 def find_fits(holdings: Iterable[Holding], request: Request) -> Answer:
@@ -37,13 +37,12 @@ def find_fits(holdings: Iterable[Holding], request: Request) -> Answer:
     Raises
     ------
     BadRequestError
-        The supply does not suit the timer, or a slot of too many parts was asked for.
+        A band of nothing, or a slot of too many parts was asked for.
     SelfCheckError
         A fit failed its own check.
     """
     start = perf_counter()
     check_request(request)
-    check_supply(request.timer, request.supply)
     stock = tuple(sorted(holdings, key=attrgetter("id")))
     usable = usable_parts(stock, request)
     found, not_listed = search_choices(usable, request)
@@ -64,6 +63,7 @@ def find_fits(holdings: Iterable[Holding], request: Request) -> Answer:
         searched=searched,
         refusals=usable.refusals,
         advice=advice,
+        ways_out=way_out(fits, request, lambda other: _first_fit(stock, other)),
     )
 
 
@@ -107,7 +107,10 @@ def search_choices(usable: Usable, request: Request) -> tuple[list[Choice], froz
     too many to list.
     """
     space = Space(usable.resistors, usable.capacitors, request)
-    if not space.resistors.lots or not space.capacitors.lots:
+    circuit = request.circuit
+    if (circuit.resistors and not space.resistors.lots) or (
+        circuit.capacitor and not space.capacitors.lots
+    ):
         return [], frozenset()
     judge = Judge(request, space.resistors, space.capacitors)
     drawers = Drawers.of(space.resistors), Drawers.of(space.capacitors)

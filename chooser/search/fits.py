@@ -7,26 +7,16 @@ from dataclasses import replace as changed
 from itertools import pairwise
 
 from chooser.cautions import FitFacts, cautions_of
-from chooser.circuits.leakage import leak_conductance
-from chooser.interval import SlotFacts, likely_miss, outlook
-from chooser.networks import (
-    Group,
-    Join,
-    Network,
-    adding_join,
-    members,
-    replace,
-    slot_tolerance,
-    value_of,
-)
+from chooser.interval import likely_miss, outlook
+from chooser.networks import Network, replace
 from chooser.parts import Holding, Kind
 from chooser.quantities import format_percent
-from chooser.search.balanced import PER_PART
 from chooser.search.choosing import Choice
 from chooser.search.ranking import whole_ppm
-from chooser.search.request import Fit, Request
+from chooser.search.request import Fit, Request, Slot
 from chooser.search.terms import Rank
-from chooser.uncertainty import limits_of
+from chooser.search.weighing import PER_PART
+from chooser.slot_facts import NOTHING, SlotFacts, slot_facts
 
 
 def fit_of(choice: Choice, holdings: Mapping[int, Holding], request: Request) -> Fit:
@@ -36,66 +26,54 @@ def fit_of(choice: Choice, holdings: Mapping[int, Holding], request: Request) ->
     ----------
     choice : networks of holding ids. holdings : the stock by id. request : what was asked.
     """
-    resistor = replace(choice.resistor, holdings.__getitem__)
-    capacitor = replace(choice.capacitor, holdings.__getitem__)
-    r, c = _slot(resistor, Kind.RESISTOR, request), _slot(capacitor, Kind.CAPACITOR, request)
-    out = outlook(r, c, request.timer, request.supply, request.band)
-    error = out.nominal / request.target - 1
-    facts = FitFacts(
-        r,
-        c,
-        tuple(members(resistor)),
-        tuple(members(capacitor)),
-        request.timer,
-        request.supply,
-        out,
-        request.target,
-        _has_series(capacitor),
+    circuit = request.circuit
+    networks = [
+        replace(network, holdings.__getitem__)
+        for network in (*choice.resistors, *choice.capacitors)
+    ]
+    facts = dict(zip(circuit.slots, map(_facts(request), networks, circuit.slots), strict=True))
+    rs = [facts[name] for name in circuit.resistors]
+    variant = circuit.variants[choice.pairing.variant]
+    out = outlook(circuit, rs, facts.get("C", NOTHING), request.bands, variant.scale)
+    nominal = {reading.output: reading.nominal for reading in out.readings}
+    errors = {target.output: target.error(nominal[target.output]) for target in request.targets}
+    chief = max(request.targets, key=lambda target: abs(errors[target.output]))
+    slots = tuple(
+        Slot(name, network, facts[name].value)
+        for name, network in zip(circuit.slots, networks, strict=True)
     )
     return Fit(
-        resistor=resistor,
-        capacitor=capacitor,
-        resistance=r.value,
-        capacitance=c.value,
-        error=error,
+        slots=slots,
+        variant=variant,
         outlook=out,
-        likely_miss=float(likely_miss(out.mean / request.target - 1, out.spread)),
-        in_band=abs(error) <= request.within + 1e-12,
-        cautions=cautions_of(facts),
+        errors=errors,
+        error=errors[chief.output],
+        spread=out.of(chief.output).spread,
+        likely_miss=max(
+            float(likely_miss(target.error(reading.mean), reading.spread))
+            for target in request.targets
+            for reading in [out.of(target.output)]
+        ),
+        in_band=request.accepts(nominal),
+        cautions=cautions_of(FitFacts(circuit, _by_name(slots), facts, out, _wanted(request))),
     )
 
 
-def _slot(network: Network[Holding], kind: Kind, request: Request) -> SlotFacts:
-    adds = adding_join(kind)
-    found = slot_tolerance(
-        network,
-        adds,
-        lambda holding: holding.part.effective,
-        lambda holding: limits_of(holding.part),
-    )
-    leaks = (0.0, 0.0)
-    if kind is Kind.CAPACITOR and not request.timer.ideal:
-        # Leaks combine as conductances do, whatever the parts' values.
-        leaks = (
-            value_of(
-                network, Join.PARALLEL, lambda h: leak_conductance(h.part, request.supply).typical
-            ),
-            value_of(
-                network, Join.PARALLEL, lambda h: leak_conductance(h.part, request.supply).limit
-            ),
-        )
-    return SlotFacts(found.value, found.low, found.high, found.spread, found.shift, *leaks)
+def _by_name(slots: Sequence[Slot]) -> dict[str, Network[Holding]]:
+    return {slot.name: slot.network for slot in slots}
 
 
-def _has_series(network: Network[Holding]) -> bool:
-    if not isinstance(network, Group):
-        return False
-    return network.join is Join.SERIES or any(_has_series(child) for child in network.children)
+def _wanted(request: Request) -> dict[str, tuple[float, float]]:
+    return {target.output: (target.low, target.high) for target in request.targets}
 
 
-def parts_in(fit: Fit) -> int:
-    """Count the parts of a fit."""
-    return sum(1 for _ in members(fit.resistor)) + sum(1 for _ in members(fit.capacitor))
+def _facts(request: Request) -> Callable[[Network[Holding], str], SlotFacts]:
+    def of(network: Network[Holding], name: str) -> SlotFacts:
+        circuit = request.circuit
+        kind = Kind.CAPACITOR if name == "C" else Kind.RESISTOR
+        return slot_facts(network, kind, circuit.supply, lossless=circuit.lossless)
+
+    return of
 
 
 def explained(fits: Sequence[Fit], rank: Rank) -> tuple[Fit, ...]:
@@ -108,7 +86,7 @@ def explained(fits: Sequence[Fit], rank: Rank) -> tuple[Fit, ...]:
 def _exact_reason(rank: Rank) -> Callable[[Fit, Fit], str]:
     def reason(fit: Fit, after: Fit) -> str:
         ppm, ppm_after = whole_ppm(abs(fit.error)), whole_ppm(abs(after.error))
-        parts, parts_after = parts_in(fit), parts_in(after)
+        parts, parts_after = fit.parts, after.parts
         if rank is Rank.ERROR and ppm != ppm_after:
             return f"nearer: {ppm:,} ppm against {ppm_after:,} ppm"
         if parts != parts_after:
@@ -125,7 +103,7 @@ def _exact_reason(rank: Rank) -> Callable[[Fit, Fit], str]:
 def _balanced_reason(fit: Fit, after: Fit) -> str:
     if fit.in_band != after.in_band:
         return "inside the accepted band"
-    parts, parts_after = parts_in(fit), parts_in(after)
+    parts, parts_after = fit.parts, after.parts
     miss, miss_after = (format_percent(each.likely_miss, digits=3) for each in (fit, after))
     if parts == parts_after:
         return f"likely miss {miss} against {miss_after} with as many parts"

@@ -8,10 +8,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import dataclass
 
-import numpy as np
-from numpy.typing import ArrayLike, NDArray
-
-from chooser.circuits.monostable import Drive, limits
+from chooser.circuits.circuit import Bounds
 from chooser.errors import BadRequestError
 from chooser.parts import Holding, Kind
 from chooser.quantities import (
@@ -23,9 +20,6 @@ from chooser.quantities import (
 from chooser.search.request import Refusal, Request
 from chooser.search.terms import REASONS, USUAL_PARTS, Rule
 from chooser.technologies import is_polarised, technology_of
-
-LEAST_FARAD = 1e-9
-"""Least timing capacitance: 10 pF of strays, a usual figure, are then 1 %."""
 
 LEAK_RATIO = 3.0
 """Least charging current at the trip point over the capacitor's typical leakage.
@@ -88,65 +82,60 @@ def usable_parts(holdings: Iterable[Holding], request: Request) -> Usable:
         out = [holding for holding in capacitors if _is_class_2(holding)]
         capacitors = _without(capacitors, out, Rule.CERAMIC, "of ceramic", refusals)
     if Rule.VOLTAGE not in request.lifted:
-        out = [holding for holding in capacitors if _is_rated_below(holding, request.supply)]
-        what = f"rated below {format_voltage(request.supply)}"
+        supply = request.circuit.supply
+        out = [holding for holding in capacitors if _is_rated_below(holding, supply)]
+        what = f"rated below {format_voltage(supply)}"
         capacitors = _without(capacitors, out, Rule.VOLTAGE, what, refusals)
+    if request.circuit.alternating:
+        out = [holding for holding in capacitors if is_polarised(holding.part)]
+        capacitors = _without(capacitors, out, Rule.POLARISED_SWING, "of polarised kind", refusals)
     refusals += _network_refusals(capacitors, request)
     return Usable(tuple(resistors), tuple(capacitors), tuple(refusals))
 
 
 def _network_refusals(capacitors: Sequence[Holding], request: Request) -> Iterator[Refusal]:
     """Say which networks of usable parts the rules keep out."""
-    small = [holding for holding in capacitors if holding.part.effective < LEAST_FARAD]
+    least_farad = request.circuit.least_farad
+    small = [holding for holding in capacitors if holding.part.effective < least_farad]
     if small and Rule.STRAYS not in request.lifted:
-        least = format_capacitance(LEAST_FARAD)
+        least = format_capacitance(least_farad, digits=3)
         why = f"Timing capacitances below {least} are left out: {REASONS[Rule.STRAYS]}."
         yield Refusal(Rule.STRAYS, why)
+    most_farad = request.circuit.most_farad
+    large = [holding for holding in capacitors if holding.part.effective > most_farad]
+    if large and Rule.LARGE not in request.lifted:
+        most = format_capacitance(most_farad, digits=3)
+        why = f"Timing capacitances above {most} are left out: {REASONS[Rule.LARGE]}."
+        yield Refusal(Rule.LARGE, why)
     polarised = [holding for holding in capacitors if is_polarised(holding.part)]
     if polarised and request.most_capacitors > 1 and Rule.POLARISED_SERIES not in request.lifted:
         why = f"Series of polarised capacitors are left out: {REASONS[Rule.POLARISED_SERIES]}."
         yield Refusal(Rule.POLARISED_SERIES, why)
-    least_ohm, most_ohm = resistor_limits(request)
-    if least_ohm > most_ohm:
+    yield from _resistor_refusals(request)
+
+
+def _resistor_refusals(request: Request) -> Iterator[Refusal]:
+    """Say between which resistances the device is happy."""
+    bounds = resistor_bounds(request)
+    least, most = (format_resistance(ohm, digits=3) for ohm in (bounds.least, bounds.most))
+    if bounds.least > bounds.most:
         yield Refusal(
             Rule.RESISTOR_LIMITS,
-            f"No timing resistance suits the {request.timer.name} timer: its discharge pin needs "
-            f"{format_resistance(least_ohm, digits=3)} or more, its own currents "
-            f"{format_resistance(most_ohm, digits=3)} or less.",
+            f"No timing resistance suits the {request.circuit.device}: its {bounds.least_why} asks "
+            f"for {least} or more, its {bounds.most_why} for {most} or less.",
         )
-    elif least_ohm > 0 and most_ohm < float("inf"):
+    elif bounds.least > 0 and bounds.most < float("inf"):
+        less = ", less where the capacitor leaks" if request.circuit.capacitor else ""
         yield Refusal(
             Rule.RESISTOR_LIMITS,
-            f"Timing resistances stay between {format_resistance(least_ohm, digits=3)} "
-            f"(discharge-pin current) and {format_resistance(most_ohm, digits=3)} (the "
-            f"{request.timer.name} timer's own currents and board leakage), less where the "
-            "capacitor leaks.",
+            f"Timing resistances stay between {least} ({bounds.least_why}) and {most} "
+            f"({bounds.most_why}){less}.",
         )
 
 
-def resistor_limits(request: Request) -> tuple[float, float]:
-    """Return the least and most timing resistance in ohm that the timer allows."""
-    if Rule.RESISTOR_LIMITS in request.lifted:
-        return 0.0, float("inf")
-    return limits(request.timer, request.supply)
-
-
-def leak_bound(leak: ArrayLike, drive: Drive) -> NDArray[np.float64]:
-    """Return the resistance that still charges LEAK_RATIO times what the capacitor leaks.
-
-    At the trip point, (1 - a) V / R = LEAK_RATIO x a V G, with a the threshold as a fraction of
-    the supply V.
-
-    Parameters
-    ----------
-    leak : typical leak conductance G in siemens, >= 0, any shape. drive : the timer.
-
-    Returns
-    -------
-    Ohm, of the same shape; infinity where nothing leaks.
-    """
-    with np.errstate(divide="ignore"):
-        return np.asarray((1 - drive.threshold) / (LEAK_RATIO * drive.threshold * np.asarray(leak)))
+def resistor_bounds(request: Request) -> Bounds:
+    """Return the resistances that the device allows; all of them where the rule is lifted."""
+    return Bounds() if Rule.RESISTOR_LIMITS in request.lifted else request.circuit.bounds
 
 
 def _is_class_2(holding: Holding) -> bool:

@@ -1,23 +1,30 @@
-"""The one part to buy that would bring the interval into the band."""
+"""The one part to buy that would bring the circuit into the band."""
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator
+from collections import Counter
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
+from itertools import product
 
+import numpy as np
+
+from chooser.circuits.circuit import outputs_of
 from chooser.circuits.leakage import leak_conductance
-from chooser.circuits.monostable import interval, resistance, typical
 from chooser.parts import Holding, Kind, Part
-from chooser.preferred import nearest
+from chooser.preferred import values_between
 from chooser.quantities import (
     format_capacitance,
     format_duration,
     format_percent,
     format_resistance,
 )
-from chooser.search.house_rules import LEAST_FARAD, leak_bound, resistor_limits
+from chooser.search.joint import errors_of, in_ranges
+from chooser.search.pools import Floats
 from chooser.search.request import Request
+from chooser.search.slots import charging_bounds
 from chooser.search.terms import Rule
+from chooser.search.wanted import charging_of
 
 BIGGEST_FILM = 4.7e-6
 """Farad up to which film capacitors are commonly sold (common practice, no source)."""
@@ -25,46 +32,58 @@ BIGGEST_FILM = 4.7e-6
 BIGGEST_CAPACITOR = 2.2e-3
 """Farad beyond which no capacitor is suggested: it would load the discharge pin."""
 
+SOLD_OHM = (1.0, 10e6)
+"""Resistors that every dealer has, in ohm (common practice, no source)."""
+
+MOST_OWNED = 40_000
+"""Ways to choose the parts beside the bought one that are looked at."""
+
 
 @dataclass(frozen=True, slots=True)
 class Purchase:
-    """A part to buy and the holding it works with.
+    """A part to buy and the holdings it works with.
 
     Attributes
     ----------
-    bought : the part. series : the E-series it is from. owned : the holding used beside it.
-    interval : what they make, in second. error : relative to the target.
+    bought : the part. slot : where it goes. series : the E-series it is from.
+    owned : the holding used beside it in each other slot.
+    output : the chief output they make, as people read it. error : relative to the target.
     boards : how many are built, each with one of the bought parts.
     """
 
     bought: Part
+    slot: str
     series: str
-    owned: Holding
-    interval: float
+    owned: tuple[tuple[str, Holding], ...]
+    output: str
     error: float
     boards: int = 1
 
     def __str__(self) -> str:
-        write = {Kind.CAPACITOR: format_capacitance, Kind.RESISTOR: format_resistance}
-        bought, owned = self.bought, self.owned.part
-        what = f"{write[bought.kind](bought.value)} {bought.technology or ''}".rstrip()
+        bought = self.bought
+        what = f"{_value(bought, bought.value)} {bought.technology or ''}".rstrip()
         number = "One" if self.boards == 1 else f"{self.boards} of"
+        several = len(self.owned) > 1
+        beside = " and ".join(
+            f"the {_value(holding.part, holding.part.effective)} in drawer {holding.drawer}"
+            + (f" as {name}" if several else "")
+            for name, holding in self.owned
+        )
+        use = f"bought{f' as {self.slot}' if several else ''} for {beside}" if beside else "bought"
         return (
-            f"{number} {what} {bought.kind} ({self.series}) bought for the "
-            f"{write[owned.kind](owned.effective)} in drawer {self.owned.drawer} would make "
-            f"{format_duration(self.interval, digits=4)} "
+            f"{number} {what} {bought.kind} ({self.series}) {use} would make {self.output} "
             f"({format_percent(self.error, digits=2, signed=True)})."
         )
 
 
 def one_purchase(
-    resistors: Iterable[Holding], capacitors: Iterable[Holding], request: Request
+    resistors: Sequence[Holding], capacitors: Sequence[Holding], request: Request
 ) -> Purchase | None:
     """Find the single purchase that gets into the band, a resistor before a capacitor.
 
     Parameters
     ----------
-    resistors, capacitors : usable holdings; one of them pairs with the bought part.
+    resistors, capacitors : usable holdings; single ones go with the bought part.
     request : what is asked.
 
     Returns
@@ -72,67 +91,143 @@ def one_purchase(
     The purchase with the smallest error, from E24, else from E96 for resistors; E6 for
     capacitors. None where no single part helps.
     """
-    enough = [h for h in capacitors if h.free is None or h.free >= request.boards]
+    circuit = request.circuit
+    stock = {
+        name: _several(capacitors if name == "C" else resistors, request.boards)
+        for name in circuit.slots
+    }
     for series in ("E24", "E96"):
-        found = _best(_resistors_to_buy(enough, series, request), request)
-        if found is not None:
-            return found
-    enough = [h for h in resistors if h.free is None or h.free >= request.boards]
-    return _best(_capacitors_to_buy(enough, request), request)
+        found = [_bought(stock, name, series, request) for name in circuit.resistors]
+        best = min(filter(None, found), key=lambda each: abs(each.error), default=None)
+        if best is not None:
+            return best
+    return _bought(stock, "C", "E6", request) if circuit.capacitor else None
 
 
-def _best(purchases: Iterable[Purchase], request: Request) -> Purchase | None:
-    inside = [each for each in purchases if abs(each.error) <= request.within]
-    return min(
-        inside,
-        key=lambda each: (round(abs(each.error), 4), each.bought.value, each.owned.id),
-        default=None,
-    )
+def _several(holdings: Sequence[Holding], boards: int) -> list[Holding]:
+    return [each for each in holdings if each.free is None or each.free >= boards]
 
 
-def _resistors_to_buy(
-    capacitors: Iterable[Holding], series: str, request: Request
-) -> Iterator[Purchase]:
-    drive = typical(request.timer, request.supply)
-    for holding in capacitors:
-        leak = _leak(holding.part, request)
-        wanted = float(resistance(request.target, holding.part.effective, leak, drive))
-        if not 0.1 <= wanted <= 1e9:  # noqa: PLR2004 - beyond what is sold
-            continue
-        part = Part(Kind.RESISTOR, nearest(series, wanted))
-        if _allowed(part.value, holding.part, leak, request):
-            yield _purchase(part, series, holding, request)
+def _bought(
+    stock: dict[str, list[Holding]], slot: str, series: str, request: Request
+) -> Purchase | None:
+    """Return the best value of a series for one slot, beside what is owned for the others."""
+    others = [name for name in request.circuit.slots if name != slot]
+    combinations = list(_combinations([stock[name] for name in others], request.boards))
+    bought = np.array(_on_sale(slot, series, request))
+    if not combinations or not len(bought):
+        return None
+    owned = np.array(
+        [[holding.part.effective for holding in combination] for combination in combinations]
+    ).reshape(len(combinations), len(others))
+    columns: dict[str, Floats] = {slot: np.tile(bought, len(owned))}
+    for place, name in enumerate(others):
+        columns[name] = np.repeat(owned[:, place], len(bought))
+    leak = _leaks(slot, bought, combinations, others, request)
+    errors = _errors(columns, leak, request)
+    best = int(np.argmin(np.round(errors, 4)))
+    if not errors[best] <= request.within:
+        return None
+    row, place = divmod(best, len(bought))
+    part = _part(slot, float(bought[place]))
+    pairs = tuple(zip(others, combinations[row], strict=True))
+    values = {name: float(column[best]) for name, column in columns.items()}
+    output, error = _worst(values, float(leak[best]), request)
+    return Purchase(part, slot, series, pairs, output, error, request.boards)
 
 
-def _capacitors_to_buy(resistors: Iterable[Holding], request: Request) -> Iterator[Purchase]:
-    for holding in resistors:
-        ohm = holding.part.effective
-        wanted = request.target / (ohm * 1.1)
-        if not LEAST_FARAD <= wanted <= BIGGEST_CAPACITOR:
-            continue
-        value = nearest("E6", wanted)
-        technology = "polyester" if value <= BIGGEST_FILM else "electrolytic"
-        part = Part(Kind.CAPACITOR, value, technology=technology)
-        if _allowed(ohm, part, _leak(part, request), request):
-            yield _purchase(part, "E6", holding, request)
+def _combinations(choices: list[list[Holding]], boards: int) -> Iterator[tuple[Holding, ...]]:
+    """Yield the ways to fill the other slots with single parts, as far as they are looked at."""
+    ways = product(*choices)
+    for number, way in enumerate(ways):
+        if number >= MOST_OWNED:
+            return
+        taken = Counter(holding.id for holding in way)
+        if all(h.free is None or h.free >= taken[h.id] * boards for h in way):
+            yield way
 
 
-def _purchase(bought: Part, series: str, owned: Holding, request: Request) -> Purchase:
-    pair = sorted((bought, owned.part), key=lambda part: part.kind is Kind.CAPACITOR)
-    ohm, farad = pair[0].effective, pair[1].effective
-    drive = typical(request.timer, request.supply)
-    time = float(interval(ohm, farad, _leak(pair[1], request), drive))
-    return Purchase(bought, series, owned, time, time / request.target - 1, request.boards)
+def _on_sale(slot: str, series: str, request: Request) -> list[float]:
+    if slot == "C":
+        least, most = max(request.circuit.least_farad, 1e-12), BIGGEST_CAPACITOR
+        if request.circuit.alternating and Rule.POLARISED_SWING not in request.lifted:
+            most = BIGGEST_FILM
+        return values_between(series, least, most) if least <= most else []
+    return values_between(series, *SOLD_OHM)
 
 
-def _allowed(ohm: float, capacitor: Part, leak: float, request: Request) -> bool:
-    if capacitor.effective < LEAST_FARAD and Rule.STRAYS not in request.lifted:
-        return False
-    least, most = resistor_limits(request)
-    if Rule.RESISTOR_LIMITS not in request.lifted:
-        most = min(most, float(leak_bound(leak, typical(request.timer, request.supply))))
-    return least <= ohm <= most
+def _part(slot: str, value: float) -> Part:
+    if slot != "C":
+        return Part(Kind.RESISTOR, value)
+    technology = "polyester" if value <= BIGGEST_FILM else "electrolytic"
+    return Part(Kind.CAPACITOR, value, technology=technology)
 
 
-def _leak(part: Part, request: Request) -> float:
-    return 0.0 if request.timer.ideal else leak_conductance(part, request.supply).typical
+def _leaks(
+    slot: str,
+    bought: Floats,
+    combinations: Sequence[tuple[Holding, ...]],
+    others: Sequence[str],
+    request: Request,
+) -> Floats:
+    """Return the typical leak of each combination's capacitor in siemens."""
+    circuit = request.circuit
+    if circuit.lossless or not circuit.capacitor:
+        return np.zeros(len(bought) * len(combinations))
+    if slot == "C":
+        parts = [_part("C", float(value)) for value in bought]
+        leaks = [leak_conductance(part, circuit.supply).typical for part in parts]
+        return np.tile(leaks, len(combinations))
+    place = others.index("C")
+    owned = [leak_conductance(each[place].part, circuit.supply).typical for each in combinations]
+    return np.repeat(owned, len(bought))
+
+
+def _errors(columns: dict[str, Floats], leak: Floats, request: Request) -> Floats:
+    """Return the size of each combination's error; infinity where a rule forbids it."""
+    circuit = request.circuit
+    rs = tuple(columns[name] for name in circuit.resistors)
+    farad = columns.get("C", np.ones(len(leak)))
+    with np.errstate(invalid="ignore", divide="ignore"):
+        times = tuple(
+            circuit.variants[0].scale * time for time in circuit.typical.times(rs, farad, leak)
+        )
+        errors = errors_of(request, times)
+    allowed = np.isfinite(errors) & in_ranges(request, times)
+    if rs and circuit.capacitor:
+        least, most = charging_bounds(leak, request)
+        largest = np.maximum(charging_of(circuit, rs), np.max(rs, axis=0))
+        allowed &= (largest <= most) & (np.min(rs, axis=0) >= least)
+    if circuit.capacitor and Rule.STRAYS not in request.lifted:
+        allowed &= farad >= circuit.least_farad
+    if circuit.capacitor and Rule.LARGE not in request.lifted:
+        allowed &= farad <= circuit.most_farad
+    return np.where(allowed, errors, np.inf)
+
+
+def _worst(values: dict[str, float], leak: float, request: Request) -> tuple[str, float]:
+    """Return what the output with the largest error is, as text, and that error."""
+    circuit = request.circuit
+    rs = [values[name] for name in circuit.resistors]
+    times = circuit.typical.times(rs, values.get("C", 1.0), leak)
+    scale = circuit.variants[0].scale
+    outputs = outputs_of(circuit, [scale * float(time) for time in times])
+    errors = {target: target.error(float(outputs[target.output])) for target in request.targets}
+    target = max(errors, key=lambda each: abs(errors[each]))
+    return _output_text(target.output, float(outputs[target.output])), errors[target]
+
+
+def _output_text(output: str, value: float) -> str:
+    if output == "resistance":
+        return format_resistance(value, digits=4)
+    if output == "capacitance":
+        return format_capacitance(value, digits=4)
+    if output == "duty":
+        return f"a duty of {format_percent(value, digits=3)}"
+    name = "" if output == "interval" else f"a {output} time of " if output != "period" else ""
+    return f"{name}{format_duration(value, digits=4)}"
+
+
+def _value(part: Part, value: float) -> str:
+    write = format_capacitance if part.kind is Kind.CAPACITOR else format_resistance
+    return write(value)

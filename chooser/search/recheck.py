@@ -6,10 +6,10 @@ from collections import Counter
 from collections.abc import Callable
 from fractions import Fraction
 
+from chooser.circuits.circuit import outputs_of
 from chooser.circuits.leakage import leak_conductance
-from chooser.circuits.monostable import LN3, interval, typical
 from chooser.errors import SelfCheckError
-from chooser.networks import Join, Leaf, Network, members, parse_network, write_network
+from chooser.networks import Join, Leaf, Network, parse_network, write_network
 from chooser.parts import Holding
 from chooser.search.request import Fit, Request
 
@@ -26,22 +26,55 @@ def recheck(fit: Fit, request: Request) -> None:
     Raises
     ------
     SelfCheckError
-        A value, the error or a count does not agree: our fault, and the fit is not shown.
+        A value, an error or a count does not agree: our fault, and the fit is not shown.
     """
-    ohm = _reread(fit.resistor, Join.SERIES, _effective)
-    farad = _reread(fit.capacitor, Join.PARALLEL, _effective)
-    for name, said, found in (("R", fit.resistance, ohm), ("C", fit.capacitance, farad)):
-        if abs(Fraction(said) / found - 1) > AGREEMENT:
-            raise _failed(f"{name} = {said} was to be {float(found)}")
-    if request.timer.ideal:
-        ratio = float(ohm * farad * Fraction(LN3) / Fraction(request.target))
-    else:
-        leak = float(_reread(fit.capacitor, Join.PARALLEL, _leak(request.supply)))
-        drive = typical(request.timer, request.supply)
-        ratio = float(interval(float(ohm), float(farad), leak, drive)) / request.target
-    if abs(fit.error + 1 - ratio) > AGREEMENT * max(1.0, ratio):
-        raise _failed(f"an error of {fit.error} was to be {ratio - 1}")
+    found: dict[str, Fraction] = {}
+    for slot in fit.slots:
+        adds = Join.PARALLEL if slot.name == "C" else Join.SERIES
+        found[slot.name] = _reread(slot.network, adds, _effective)
+        if abs(Fraction(slot.value) / found[slot.name] - 1) > AGREEMENT:
+            raise _failed(f"{slot.name} = {slot.value} was to be {float(found[slot.name])}")
+    outputs = _outputs(fit, request, found)
+    errors = {target.output: target.error(outputs[target.output]) for target in request.targets}
+    for output, error in errors.items():
+        if not _agree(fit.errors[output], error):
+            raise _failed(f"an error of {fit.errors[output]} was to be {error}")
+    worst = max(map(abs, errors.values()))
+    # The largest error may be either of two of the same size.
+    if not any(_agree(fit.error, e) for e in errors.values() if _agree(abs(e), worst)):
+        raise _failed(f"a largest error of {fit.error} was to be of size {worst}")
+    if fit.in_band != request.accepts(outputs) and not _on_the_edge(outputs, request):
+        raise _failed(f"{outputs} was said to be {'in' if fit.in_band else 'out of'} the band")
     _check_counts(fit, request)
+
+
+def _agree(said: float, found: float) -> bool:
+    return abs(said - found) <= AGREEMENT * max(1.0, abs(found))
+
+
+def _on_the_edge(outputs: dict[str, float], request: Request) -> bool:
+    """Tell whether rounding decides if an output is in its band."""
+    return any(
+        abs(outputs[output] / end - 1) < AGREEMENT
+        for output, ends in request.bands.items()
+        for end in ends
+    )
+
+
+def _outputs(fit: Fit, request: Request, values: dict[str, Fraction]) -> dict[str, float]:
+    """Work the outputs out from slot values, in fractions where the formula allows it."""
+    circuit = request.circuit
+    ohms = [values[name] for name in circuit.resistors]
+    farad = values.get("C", Fraction(1))
+    times = circuit.typical.exactly(ohms, farad)
+    if times is None:
+        leak = 0.0
+        if circuit.capacitor and not circuit.lossless:
+            leak = float(_reread(fit.slot("C").network, Join.PARALLEL, _leak(circuit.supply)))
+        floats = circuit.typical.times([float(ohm) for ohm in ohms], float(farad), leak)
+        times = tuple(Fraction(float(time)) for time in floats)
+    made = outputs_of(circuit, [Fraction(fit.variant.scale) * time for time in times])
+    return {output: float(value) for output, value in made.items()}
 
 
 def _failed(what: str) -> SelfCheckError:
@@ -78,11 +111,8 @@ def _folded(network: Network[Fraction], adds: Join) -> Fraction:
 
 
 def _check_counts(fit: Fit, request: Request) -> None:
-    taken = Counter(holding.id for holding in members(fit.resistor))
-    taken.update(holding.id for holding in members(fit.capacitor))
-    free = {
-        holding.id: holding.free for holding in (*members(fit.resistor), *members(fit.capacitor))
-    }
+    taken = Counter(holding.id for holding in fit.holdings())
+    free = {holding.id: holding.free for holding in fit.holdings()}
     for number, count in taken.items():
         there = free[number]
         if there is not None and count * request.boards > there:

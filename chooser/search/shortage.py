@@ -6,7 +6,6 @@ from collections import Counter
 from collections.abc import Callable
 from dataclasses import replace
 
-from chooser.networks import members
 from chooser.parts import Holding, Kind
 from chooser.quantities import format_capacitance, format_resistance
 from chooser.search.request import Fit, Request
@@ -53,7 +52,7 @@ def shortage(request: Request, search: Search) -> tuple[str, ...]:
 
 def _short_of(fit: Fit, boards: int) -> str:
     """Name what so many boards need beyond what is free."""
-    holdings = [*members(fit.resistor), *members(fit.capacitor)]
+    holdings = list(fit.holdings())
     taken = Counter(holding.id for holding in holdings)
     by_id = {holding.id: holding for holding in holdings}
     short = [

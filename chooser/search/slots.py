@@ -1,19 +1,19 @@
-"""The two slots of a one-resistor, one-capacitor circuit, laid out for the search."""
+"""The capacitor slot of a circuit, laid out for the search with what each network wants."""
 
 from __future__ import annotations
 
 from collections.abc import Hashable, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, fields
 from functools import cache
+from math import isfinite
 
 import numpy as np
 from numpy.typing import NDArray
 
 from chooser.circuits.leakage import leak_conductance
-from chooser.circuits.monostable import endless_from, resistance, starts_from, typical
 from chooser.networks import Group, Join, Leaf
 from chooser.parts import Holding, Part, Tolerance
-from chooser.search.house_rules import LEAST_FARAD, leak_bound, resistor_limits
+from chooser.search.house_rules import LEAK_RATIO, resistor_bounds
 from chooser.search.pools import Floats, Pool, gather
 from chooser.search.request import Request
 from chooser.search.tables import Rows, Shape, Tables, every_network
@@ -50,8 +50,9 @@ def capacitor_pool(holdings: Sequence[Holding], request: Request) -> Pool:
 
 
 def leak_of(part: Part, request: Request) -> float:
-    """Return the typical leak conductance in siemens; none for the ideal timer."""
-    return 0.0 if request.timer.ideal else leak_conductance(part, request.supply).typical
+    """Return the typical leak conductance in siemens; none in a lossless circuit."""
+    circuit = request.circuit
+    return 0.0 if circuit.lossless else leak_conductance(part, circuit.supply).typical
 
 
 @dataclass(frozen=True, slots=True)
@@ -60,14 +61,18 @@ class CapacitorSlots:
 
     Attributes
     ----------
-    rows : the networks.
+    rows : the networks; each as often as the circuit has variants.
+    variant, scale : (n,) number of the circuit's variant, and what it multiplies times by.
     farad, leak : (n,) capacitance in farad and typical leak conductance in siemens.
-    wanted : (n,) resistance in ohm that makes the target interval exactly.
+    wanted : (n,) resistance in ohm that makes the target time exactly; of a circuit with two
+        resistors the one that the capacitor would charge through, were it the only one.
     least, most : (n,) resistances in ohm that the house rules allow.
     main : (n,) number of the lot with the greatest share of the capacitance.
     """
 
     rows: Rows
+    variant: NDArray[np.int16]
+    scale: Floats
     farad: Floats
     leak: Floats
     wanted: Floats
@@ -93,26 +98,70 @@ def capacitor_slots(pool: Pool, tables: Tables, size: int, request: Request) -> 
     series_allowed = Rule.POLARISED_SERIES in request.lifted
     pieces = []
     for rows in every_network(tables, size):
-        kept = rows if series_allowed else rows.take(_unpolarised_series(rows, polarised))
+        kept = rows if series_allowed else rows.take(unpolarised_series(rows, polarised))
         if Rule.STRAYS not in request.lifted:
-            kept = kept.take(kept.value <= 1 / LEAST_FARAD * (1 + 1e-12))
-        pieces.append(_slots(kept, pool, leaks, request))
+            kept = kept.take(kept.value * request.circuit.least_farad <= 1 + 1e-12)
+        if Rule.LARGE not in request.lifted and isfinite(request.circuit.most_farad):
+            kept = kept.take(kept.value * request.circuit.most_farad >= 1 - 1e-12)
+        variants = range(len(request.circuit.variants))
+        pieces += [_slots(kept, pool, leaks, request, variant) for variant in variants]
     return _together(pieces)
 
 
-def _slots(rows: Rows, pool: Pool, leaks: Floats, request: Request) -> CapacitorSlots:
-    drive = typical(request.timer, request.supply)
+def no_capacitor(request: Request) -> CapacitorSlots:
+    """Return the one way to have no capacitor, in a circuit without that slot."""
+    one = np.ones(1)
+    return CapacitorSlots(
+        rows=Rows.blank(1),
+        variant=np.zeros(1, dtype=np.int16),
+        scale=one,
+        farad=one,
+        leak=np.zeros(1),
+        wanted=request.circuit.law.resistance(request.target, one, 0.0),
+        least=np.zeros(1),
+        most=np.full(1, np.inf),
+        main=np.zeros(1, dtype=np.int32),
+    )
+
+
+def _slots(rows: Rows, pool: Pool, leaks: Floats, request: Request, variant: int) -> CapacitorSlots:
+    circuit = request.circuit
     farad = rows.evaluate(pool.value, Join.PARALLEL)
     leak = rows.evaluate(leaks, Join.PARALLEL)
-    least, most = resistor_limits(request)
-    # An interval that never starts or never ends is no answer, whatever rule is lifted.
-    least = max(least, starts_from(drive) * (1 + MARGIN))
-    bounds = np.minimum(most, endless_from(leak, drive) * (1 - MARGIN))
-    if Rule.RESISTOR_LIMITS not in request.lifted and not request.timer.ideal:
-        bounds = np.minimum(bounds, leak_bound(leak, drive))
-    wanted = resistance(request.target, farad, leak, drive)
-    main = _main_lots(rows, pool.value)
-    return CapacitorSlots(rows, farad, leak, wanted, np.full(len(rows), least), bounds, main)
+    least, most = charging_bounds(leak, request)
+    scale = circuit.variants[variant].scale
+    wanted = np.ones(len(rows))
+    if len(circuit.resistors) == 1:
+        wanted = circuit.law.resistance(request.target / scale, farad, leak)
+    return CapacitorSlots(
+        rows=rows,
+        variant=np.full(len(rows), variant, dtype=np.int16),
+        scale=np.full(len(rows), scale),
+        farad=farad,
+        leak=leak,
+        wanted=wanted,
+        least=least,
+        most=most,
+        main=_main_lots(rows, pool.value),
+    )
+
+
+def charging_bounds(leak: Floats, request: Request) -> tuple[Floats, Floats]:
+    """Return the least and most resistance in ohm to charge through, for each leak in siemens.
+
+    The house rules set them, and so does what no rule can lift: a time that never starts or
+    never ends is no answer.
+    """
+    circuit, bounds = request.circuit, resistor_bounds(request)
+    if not circuit.resistors:
+        return np.zeros(len(leak)), np.full(len(leak), np.inf)
+    least = bounds.least
+    if len(circuit.resistors) == 1:
+        least = max(least, circuit.law.starts_from * (1 + MARGIN))
+    most = np.minimum(bounds.most, circuit.law.endless_from(leak) * (1 - MARGIN))
+    if Rule.RESISTOR_LIMITS not in request.lifted and not circuit.lossless:
+        most = np.minimum(most, circuit.law.leak_bound(leak, LEAK_RATIO))
+    return np.full(len(leak), least), most
 
 
 def _main_lots(rows: Rows, farad: Floats) -> NDArray[np.int32]:
@@ -126,16 +175,14 @@ def _together(pieces: Sequence[CapacitorSlots]) -> CapacitorSlots:
         return pieces[0]
     return CapacitorSlots(
         Rows.concatenated([piece.rows for piece in pieces]),
-        np.concatenate([piece.farad for piece in pieces]),
-        np.concatenate([piece.leak for piece in pieces]),
-        np.concatenate([piece.wanted for piece in pieces]),
-        np.concatenate([piece.least for piece in pieces]),
-        np.concatenate([piece.most for piece in pieces]),
-        np.concatenate([piece.main for piece in pieces]),
+        *(
+            np.concatenate([getattr(piece, field.name) for piece in pieces])
+            for field in fields(CapacitorSlots)[1:]
+        ),
     )
 
 
-def _unpolarised_series(rows: Rows, polarised: NDArray[np.bool_]) -> NDArray[np.bool_]:
+def unpolarised_series(rows: Rows, polarised: NDArray[np.bool_]) -> NDArray[np.bool_]:
     """Tell which rows have no polarised part anywhere in a series group."""
     fine = np.ones(len(rows), dtype=np.bool_)
     for number, shape in enumerate(rows.shapes):

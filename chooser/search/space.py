@@ -4,15 +4,17 @@ from __future__ import annotations
 
 from collections.abc import Collection, Iterator, Sequence
 from dataclasses import dataclass
+from itertools import product
 
 from chooser.parts import Holding
-from chooser.search.counting import networks_from, networks_from_polarised
+from chooser.search.counting import networks_from, networks_from_polarised, pairs_from
 from chooser.search.pools import Pool, uses_of
 from chooser.search.request import Request
 from chooser.search.slots import (
     CapacitorSlots,
     capacitor_pool,
     capacitor_slots,
+    no_capacitor,
     resistor_pool,
 )
 from chooser.search.tables import Tables
@@ -28,15 +30,15 @@ MOST_CAPACITOR_NETWORKS = 4_000_000
 
 @dataclass(frozen=True, slots=True)
 class Level:
-    """A part of the space: circuits of so many resistors and so many capacitors."""
+    """A part of the space: circuits of so many resistors in each slot and so many capacitors."""
 
-    resistors: int
+    resistors: tuple[int, ...]
     capacitors: int
 
     @property
     def parts(self) -> int:
         """Parts in all."""
-        return self.resistors + self.capacitors
+        return sum(self.resistors) + self.capacitors
 
 
 class Space:
@@ -67,16 +69,21 @@ class Space:
 
     def levels(self) -> Iterator[Level]:
         """Yield the levels, rising in parts; among equals the fewer capacitors first."""
-        most = self.request.most_resistors, self.request.most_capacitors
-        for parts in range(2, sum(most) + 1):
-            for capacitors in range(1, min(most[1], parts - 1) + 1):
-                if parts - capacitors <= most[0]:
-                    yield Level(parts - capacitors, capacitors)
+        circuit, request = self.request.circuit, self.request
+        sizes = product(range(1, request.most_resistors + 1), repeat=len(circuit.resistors))
+        capacitors = range(1, request.most_capacitors + 1) if circuit.capacitor else range(1)
+        levels = [Level(*sizes) for sizes in product(sizes, capacitors)]
+        yield from sorted(levels, key=lambda level: (level.parts, level.capacitors))
 
     def slots(self, capacitors: int) -> CapacitorSlots | None:
-        """Return the capacitor networks of a size; None, noted, where they are too many."""
+        """Return the capacitor networks of a size; None, noted, where they are too many.
+
+        Of size 0, for a circuit without a capacitor, there is one: none.
+        """
         if capacitors not in self._slots:
-            if self._capacitor_tables.count(capacitors) > MOST_CAPACITOR_NETWORKS:
+            if capacitors == 0:
+                self._slots[0] = no_capacitor(self.request)
+            elif self._capacitor_tables.count(capacitors) > MOST_CAPACITOR_NETWORKS:
                 self.not_listed |= {capacitors}
                 self._slots[capacitors] = None
             else:
@@ -106,8 +113,16 @@ def combinations(
     free = [holding for holding in capacitors if not (apart and is_polarised(holding.part))]
     free_uses = [uses_of(holding, request.boards) for holding in free]
     polar_uses = [uses_of(holding, request.boards) for holding in polar]
-    return sum(networks_from(ohms, size) for size in range(1, request.most_resistors + 1)) * sum(
+    circuit = request.circuit
+    farads = sum(
         networks_from_polarised(free_uses, polar_uses, size)
         for size in range(1, request.most_capacitors + 1)
         if size not in not_listed
     )
+    circuits = 1
+    if len(circuit.resistors) == 1:
+        sizes = range(1, request.most_resistors + 1)
+        circuits = sum(networks_from(ohms, size) for size in sizes)
+    elif circuit.resistors:
+        circuits = pairs_from(ohms, request.most_resistors)
+    return circuits * (farads if circuit.capacitor else 1) * len(circuit.variants)

@@ -80,6 +80,19 @@ class Rows:
         )
 
     @staticmethod
+    def blank(count: int) -> Rows:
+        """Return so many rows of no parts, for a slot that a circuit does not have."""
+        return Rows(
+            0,
+            (),
+            np.ones(count),
+            np.empty((count, 0), dtype=np.int32),
+            np.zeros(count, dtype=np.int16),
+            np.zeros(count, dtype=np.int8),
+            np.zeros(count, dtype=np.int32),
+        )
+
+    @staticmethod
     def concatenated(pieces: Sequence[Rows]) -> Rows:
         """Put one or more pieces of one size behind each other."""
         shapes = tuple(dict.fromkeys(shape for piece in pieces for shape in piece.shapes))
@@ -211,7 +224,7 @@ def joined(
     """
     (heads, lefts), (rests, rights) = left, right
     leaves = np.concatenate([heads.leaves[lefts], rests.leaves[rights]], axis=1)
-    kept = np.flatnonzero(_allowed(leaves, uses))
+    kept = np.flatnonzero(allowed(leaves, uses))
     lefts, rights, leaves = lefts[kept], rights[kept], leaves[kept]
     a, b = heads.value[lefts], rests.value[rights]
     shapes = tuple(
@@ -229,7 +242,7 @@ def joined(
     return kept, rows
 
 
-def _allowed(leaves: NDArray[np.int32], uses: Ints) -> NDArray[np.bool_]:
+def allowed(leaves: NDArray[np.int32], uses: Ints) -> NDArray[np.bool_]:
     """Tell which rows use no part more often than there are pieces."""
     size = leaves.shape[1]
     scarce = uses < size

@@ -12,12 +12,13 @@ from pathlib import Path
 import numpy as np
 import pytest
 
+from chooser.circuits.monostable import monostable
 from chooser.circuits.timers import timer_named
 from chooser.networks import members
 from chooser.parts import Kind
 from chooser.search.find import find_fits, search_choices
 from chooser.search.house_rules import usable_parts
-from chooser.search.request import Request
+from chooser.search.request import Request, Target
 from chooser.search.terms import Rank
 
 sys.path.insert(0, str(Path(__file__).parent))
@@ -26,12 +27,12 @@ from all_networks import ten_best
 from workshops import measured_stock, preferred_stock
 
 TARGETS = (90.0, 3.7, 1.0, 0.0123)
-IDEAL = timer_named("ideal")
 STOCKS = {"preferred values": preferred_stock, "measured values": partial(measured_stock, 1)}
 
 
-def request(target: float, rank: Rank) -> Request:
-    return Request(target=target, timer=IDEAL, supply=9.0, rank=rank)
+def request(target: float, rank: Rank, timer: str = "ideal") -> Request:
+    circuit = monostable(timer_named(timer), 9.0)
+    return Request(circuit, (Target("interval", target, target),), rank=rank)
 
 
 def chosen(stock, wish):
@@ -78,7 +79,6 @@ def test_whole_answer(benchmark, rank):
 @pytest.mark.parametrize("rank", list(Rank))
 def test_ten_times_the_stock(benchmark, rank, timer):
     benchmark.group = f"1680 x 420 measured, {rank}, {timer}"
-    stock = measured_stock()
-    wish = Request(target=90.0, timer=timer_named(timer), supply=9.0, rank=rank)
+    stock, wish = measured_stock(), request(90.0, rank, timer)
     answer = benchmark.pedantic(find_fits, (stock, wish), rounds=3, warmup_rounds=1)
-    assert all(len(list(members(fit.capacitor))) >= 1 for fit in answer.fits)
+    assert all(len(list(members(fit.slot("C").network))) >= 1 for fit in answer.fits)

@@ -79,7 +79,7 @@ class TestTheTable:
 
     def test_talk_of_danger_defers_to_local_codes_and_qualified_people(self):
         out = fit("90s", "--stock", SAMPLE).stdout
-        assert "qualified person under local codes" in out
+        assert "qualified person under your local codes" in out
 
 
 class TestJson:
@@ -92,12 +92,18 @@ class TestJson:
         assert answer["schema"] == 1
         assert answer["circuit"] == "monostable"
         assert answer["targets"] == {"interval": 90.0}
+        assert (answer["timer"], answer["device"]) == ("ideal", "ideal timer")
+        assert answer["supply"] == 9.0
         assert answer["searched"]["complete"] is True
         # One resistor holding of 3: 1 + 2 + 4 networks; one polarised capacitor of 2, never in
         # series: 1 + 1 networks.
         assert answer["searched"]["combinations"] == 7 * 2
         best = answer["fits"][0]
+        assert set(best["outputs"]) == {"interval"}
         out = best["outputs"]["interval"]
+        assert out["target"] == 90.0
+        assert out["error"] == pytest.approx(out["nominal"] / 90.0 - 1.0)
+        assert out["spread"] == best["spread"]
         assert out["nominal"] == pytest.approx(820e3 * 100e-6 * math.log(3), rel=1e-12)
         assert out["low"] == pytest.approx(out["nominal"] * 0.99 * 0.8, rel=1e-9)
         assert out["high"] == pytest.approx(out["nominal"] * 1.01 * 1.2, rel=1e-9)
@@ -180,6 +186,9 @@ class TestStatuses:
             (["5s..60s"], "range"),
             (["0s"], "zero"),
             (["90s", "--supply", "24V"], "24 V"),
+            (["1s", "--timer", "bipolar", "--supply", "1V"], "supply"),
+            (["1s", "--timer", "cmos", "--supply", "40V"], "supply"),
+            (["1s", "--timer", "ideal", "--supply", "0V"], "no voltage"),
             (["90s", "--supply", "much"], "much"),
             (["90s", "--within", "2"], "2%"),
             (["90s", "--timer", "NE5555"], "NE555"),

@@ -38,6 +38,16 @@ R, C = Kind.RESISTOR, Kind.CAPACITOR
         ("NP0 100p", Part(C, 1e-10, "100p", None, "c0g")),
         ("470 pot linear", Part(Kind.POT, 470.0, "470", taper=Taper.LINEAR)),
         ("25-turn 10k trimmer", Part(Kind.TRIMMER, 10e3, "10k", turns=25.0)),
+        ("100n 10% measured 96n", Part(C, 1e-7, "100n", sym(0.1), measured=96e-9)),
+        ("100n measured 96 n 2 %", Part(C, 1e-7, "100n", measured=96e-9, meter=0.02)),
+        ("measured: 9k9 ±1% 10k 5%", Part(R, 10e3, "10k", sym(0.05), measured=9.9e3, meter=0.01)),
+        ("polyester measured 96n", Part(C, 96e-9, "96n", None, "polyester", measured=96e-9)),
+        (
+            "100u low leakage 25V leakage 2 uA",
+            Part(C, 1e-4, "100u", None, "electrolytic-low-leakage", voltage=25.0, leakage=2e-6),
+        ),
+        ("100u leaks 1,5uA 16V", Part(C, 1e-4, "100u", voltage=16.0, leakage=1.5e-6)),
+        ("10k +/- 5%", Part(R, 10e3, "10k", sym(0.05))),
     ],
 )
 def test_a_part_in_words(text, part):
@@ -52,6 +62,11 @@ def test_a_part_in_words(text, part):
         ("metal film", ["holds no value", "10k"]),
         ("", ["holds no value"]),
         ("10k 22k", ["10k and 22k"]),
+        ("lk5 5%", ["'lk5'", "perhaps 1k5"]),
+        ("10k measured", ["'measured'", "without a figure"]),
+        ("10k measured 9k9 measured 9k8", ["measured", "9k9 and 9k8"]),
+        ("10k measured wrongly", ["'wrongly'"]),
+        ("10k leaks 2uA", ["a resistor, which has no leakage"]),
         ("10k 1% 5%", ["tolerance", "1% and 5%"]),
         ("10k trimmer capacitor", ["trimmer and a capacitor"]),
         ("10k bakelite", ["'bakelite'", "resistor"]),

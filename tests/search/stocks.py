@@ -6,11 +6,12 @@ from dataclasses import replace
 
 import oracle
 
+from chooser.circuits.monostable import monostable
 from chooser.circuits.timers import timer_named
 from chooser.networks import Leaf
 from chooser.parts import Count, Holding, Kind, Part, Sureness
 from chooser.search.find import find_fits
-from chooser.search.request import Request
+from chooser.search.request import Request, Target
 from chooser.search.terms import Rule
 
 OHMS = (1e3, 1.5e3, 2.2e3, 3.3e3, 1e4, 1.5e4, 2.2e4, 3.3e4, 1e5)
@@ -35,7 +36,9 @@ def counted(count):
 
 
 def asked(target, timer="ideal", supply=9.0, **options):
-    return Request(target, timer_named(timer), supply, **options)
+    """A request for a monostable of so many seconds."""
+    circuit = monostable(timer_named(timer), supply)
+    return Request(circuit, (Target("interval", target, target),), **options)
 
 
 def found(holdings, target, **options):
@@ -53,6 +56,27 @@ def plain(network):
 
 def ids(network):
     return oracle.parts_of(plain(network))
+
+
+def ohms_of(fit):
+    """The ids in the resistor slot of a monostable."""
+    return ids(fit.slot("R").network)
+
+
+def farads_of(fit):
+    """The ids in the capacitor slot."""
+    return ids(fit.slot("C").network)
+
+
+def parts_of(fit):
+    """The ids of both slots of a monostable."""
+    return ohms_of(fit), farads_of(fit)
+
+
+def with_slot(fit, name, **changes):
+    """A fit with something else in one slot."""
+    slots = tuple(replace(slot, **changes) if slot.name == name else slot for slot in fit.slots)
+    return replace(fit, slots=slots)
 
 
 def stock_of(holdings, kind):

@@ -10,10 +10,9 @@ from fractions import Fraction
 import numpy as np
 import oracle
 import pytest
-from stocks import asked, capacitor, ids, resistor, sides
+from stocks import asked, capacitor, farads_of, ohms_of, parts_of, resistor, sides
 
 from chooser.circuits.leakage import leak_conductance
-from chooser.circuits.monostable import endless_from, interval, limits, sensitivity, typical
 from chooser.networks import Join, shares_of
 from chooser.parts import Kind, Tolerance
 from chooser.search import space
@@ -53,11 +52,11 @@ class Plain:
         self.worth = {
             number: oracle.fraction(part.effective) for number, part in self.parts.items()
         }
-        self.drive = typical(request.timer, request.supply)
+        self.drive = request.circuit.law
         self.leaks = {
-            number: oracle.fraction(leak_conductance(part, request.supply).typical)
+            number: oracle.fraction(leak_conductance(part, request.circuit.supply).typical)
             for number, part in self.parts.items()
-            if part.kind is Kind.CAPACITOR and not request.timer.ideal
+            if part.kind is Kind.CAPACITOR and not request.circuit.timer.ideal
         }
 
     def circuits(self):
@@ -92,16 +91,17 @@ class Plain:
 
     def resistance(self, farad, leak):
         """The wanted resistance, by halving, and the ends that the rules allow."""
-        least, most = limits(self.request.timer, self.request.supply)
+        bounds = self.request.circuit.bounds
+        least, most = bounds.least, bounds.most
         end = 1e15
-        if not self.request.timer.ideal:
+        if not self.request.circuit.timer.ideal:
             a = self.drive.threshold
             most = min(most, (1 - a) / (3 * a * leak))
-            end = float(endless_from(leak, self.drive))
+            end = float(self.drive.endless_from(leak))
         low, high = 1e-3, end
         for _ in range(200):
             middle = math.sqrt(low * high)
-            early = interval(middle, farad, leak, self.drive) < self.request.target
+            early = self.drive.interval(middle, farad, leak) < self.request.target
             low, high = (middle, high) if early else (low, middle)
         return low, least, most
 
@@ -109,10 +109,10 @@ class Plain:
         request = self.request
         r_spread, r_shift, _ = self.tolerance(resistors, "+")
         c_spread, c_shift, main = self.tolerance(capacitors, "||")
-        steep = float(sensitivity(ohm, farad, leak, self.drive))
-        time = float(interval(ohm, farad, leak, self.drive))
+        steep = float(self.drive.sensitivity(ohm, farad, leak))
+        time = float(self.drive.interval(ohm, farad, leak))
         mean = time * (1 + steep * r_shift) * (1 + c_shift)
-        timer = request.timer.timing_error_limit / 3
+        timer = request.circuit.timer.timing_error_limit / 3
         variance = (steep * r_spread) ** 2 + c_spread**2 + timer**2
         miss = math.sqrt((mean / request.target - 1) ** 2 + variance)
         count = len(oracle.parts_of(resistors)) + len(oracle.parts_of(capacitors))
@@ -147,7 +147,7 @@ class Plain:
 def compare(holdings, request):
     expected = Plain(holdings, request).places()
     fits = find_fits(holdings, request).fits
-    got = [(ids(fit.resistor), ids(fit.capacitor)) for fit in fits]
+    got = [parts_of(fit) for fit in fits]
     assert got == [(list(each.parts[0]), list(each.parts[1])) for each in expected]
     for fit, circuit in zip(fits, expected, strict=True):
         # Two arrangements of the same parts may be equal: a + a on c + c is a || a on c || c.
@@ -240,7 +240,7 @@ def test_inside_the_band_comes_first_however_loose_its_parts():
     loose = capacitor(11, 1e-6, tolerance=Tolerance(0.2, 0.2))
     exact = capacitor(12, 1.05e-6, tolerance=Tolerance(0.001, 0.001))
     answer = balanced([resistor(1, 1e4), loose, exact], 1e-2 * math.log(3), most_capacitors=1)
-    assert [ids(fit.capacitor) for fit in answer.fits] == [[11], [12]]
+    assert [farads_of(fit) for fit in answer.fits] == [[11], [12]]
     assert [fit.in_band for fit in answer.fits] == [True, False]
     assert not answer.searched.complete
 
@@ -256,14 +256,14 @@ def test_a_part_more_must_cut_the_likely_miss_by_a_tenth(error, winner):
         capacitor(11, 1e-6, tolerance=rough),
     ]
     answer = balanced(holdings, 1e-2 * math.log(3), within=0.2, most_resistors=2)
-    assert ids(answer.fits[0].resistor) == winner
+    assert ohms_of(answer.fits[0]) == winner
 
 
 def test_no_two_places_with_the_same_parts():
     holdings = [resistor(number, 1e3 * number, 2) for number in (1, 2, 3)]
     holdings.append(capacitor(11, 1e-6, 2))
     answer = balanced(holdings, 2.2e-3, top=50)
-    parts = [(tuple(ids(fit.resistor)), tuple(ids(fit.capacitor))) for fit in answer.fits]
+    parts = [(tuple(ohms_of(fit)), tuple(farads_of(fit))) for fit in answer.fits]
     assert len(parts) == len(set(parts)) > 10
 
 
@@ -273,7 +273,7 @@ def test_other_capacitors_get_places_when_they_do_nearly_as_well():
     holdings = [resistor(n, 1e4 + n, tolerance=Tolerance(0.001, 0.001)) for n in range(1, 11)]
     holdings += [capacitor(21, 1e-6, tolerance=good), capacitor(22, 1.001e-6, tolerance=fair)]
     answer = balanced(holdings, 1e-2 * math.log(3), top=4, most_resistors=1, most_capacitors=1)
-    mains = [ids(fit.capacitor) for fit in answer.fits]
+    mains = [farads_of(fit) for fit in answer.fits]
     assert mains.count([22]) == 2
     scores = [fit.likely_miss for fit in answer.fits]
     assert scores == sorted(scores)
@@ -299,7 +299,7 @@ def test_equal_drawers_with_unequal_tolerances_are_told_apart():
         capacitor(12, 1e-6, tolerance=Tolerance(0.05, 0.05)),
     ]
     answer = balanced(holdings, 1e-2 * math.log(3), most_resistors=1, most_capacitors=1)
-    assert (ids(answer.fits[0].resistor), ids(answer.fits[0].capacitor)) == ([2], [12])
+    assert (ohms_of(answer.fits[0]), farads_of(answer.fits[0])) == ([2], [12])
 
 
 def main_capacitors(holdings, most):
@@ -329,4 +329,4 @@ def test_scores_of_endless_intervals_never_win():
     holdings.append(capacitor(11, 10e-6, technology="electrolytic", voltage=16.0))
     answer = balanced(holdings, 30.0, "bipolar", lifted=frozenset({Rule.RESISTOR_LIMITS}), top=30)
     assert answer.fits
-    assert all(np.isfinite(fit.outlook.nominal) for fit in answer.fits)
+    assert all(np.isfinite(fit.outlook.chief.nominal) for fit in answer.fits)

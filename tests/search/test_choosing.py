@@ -7,9 +7,9 @@ import random
 
 import oracle
 import pytest
-from stocks import EVERY_RULE, asked, capacitor, ids, plain, resistor, sides
+from stocks import EVERY_RULE, asked, capacitor, parts_of, plain, resistor, sides
 
-from chooser.networks import Group, Join, Leaf
+from chooser.networks import Group, Join, Leaf, members
 from chooser.search.choosing import Drawers, best_choice, ranked_ways, tie_break
 from chooser.search.find import find_fits
 from chooser.search.pools import gather
@@ -30,7 +30,7 @@ def series(*lots):
 
 def ranked_ids(holdings, target, **options):
     request = asked(target, rank=options.pop("rank", Rank.ERROR), lifted=EVERY_RULE, **options)
-    return [(ids(fit.resistor), ids(fit.capacitor)) for fit in find_fits(holdings, request).fits]
+    return [parts_of(fit) for fit in find_fits(holdings, request).fits]
 
 
 def test_the_more_plentiful_drawer_comes_first():
@@ -100,11 +100,18 @@ def test_many_equal_drawers_against_the_oracle(seed, rank):
     assert found == [(row[4], row[5]) for row in expected]
 
 
+def pairing(network):
+    """The pairing of a resistor network with a lot of capacitors, without any error."""
+    parts = sum(1 for _ in members(network)) + 1
+    return Pairing((network,), Leaf(0), variant=0, parts=parts, size=0.0, ppm=0)
+
+
 def ways(network, held, top):
     """The ways to fill a resistor network beside one plentiful capacitor, as plain networks."""
     caps = drawers([capacitor(11, 1e-6, None)])
-    pairing = Pairing(network, Leaf(0), 3, 0.0, 0)
-    return [choice.resistor for choice in ranked_ways(pairing, drawers(held), caps, top)]
+    return [
+        choice.resistors[0] for choice in ranked_ways(pairing(network), drawers(held), caps, top)
+    ]
 
 
 def test_every_way_to_fill_a_network_once():
@@ -137,7 +144,7 @@ def test_the_first_ways_are_the_first_of_all_ways(seed, top):
     rnd = random.Random(seed)
     held = [resistor(number, 5e3, rnd.choice((1, 2, 3, 5, 9, None))) for number in range(1, 9)]
     pool, caps = drawers(held), drawers([capacitor(11, 1e-6, rnd.choice((1, 2, 7, None)))])
-    given = Pairing(series(0, 0, 0), Leaf(0), 4, 0.0, 0)
+    given = pairing(series(0, 0, 0))
     everything = sorted(
         ranked_ways(given, pool, caps, 10**6), key=lambda choice: tie_break(choice, pool, caps)
     )
@@ -149,6 +156,6 @@ def test_the_best_choice_is_the_first():
     held = [resistor(1, 5e3, 2), resistor(2, 5e3, 7), resistor(3, 5e3, 7)]
     caps = [capacitor(11, 1e-6, 9)]
     given = drawers(held), drawers(caps)
-    best = best_choice(Pairing(series(0, 0), Leaf(0), 3, 0.0, 0), *given)
-    assert oracle.parts_of(plain(best.resistor)) == [2, 3]
+    best = best_choice(pairing(series(0, 0)), *given)
+    assert oracle.parts_of(plain(best.resistors[0])) == [2, 3]
     assert tie_break(best, *given)[:3] == (-7, [2, 3], [11])

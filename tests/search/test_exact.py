@@ -8,10 +8,19 @@ import random
 import numpy as np
 import oracle
 import pytest
-from stocks import EVERY_RULE, asked, capacitor, ids, plain, random_stock, resistor, sides
+from stocks import (
+    EVERY_RULE,
+    asked,
+    capacitor,
+    ohms_of,
+    parts_of,
+    plain,
+    random_stock,
+    resistor,
+    sides,
+)
 
 from chooser.circuits.leakage import leak_conductance
-from chooser.circuits.monostable import endless_from, interval, limits, typical
 from chooser.parts import Kind
 from chooser.search import space, windows
 from chooser.search.find import find_fits
@@ -53,8 +62,8 @@ def exact_size(fit, ohms, farads, target):
     """The error of a fit, worked out by the oracle from its networks alone."""
     r_worth = {number: oracle.fraction(value) for number, (value, _) in ohms.items()}
     c_worth = {number: oracle.fraction(value) for number, (value, _) in farads.items()}
-    ohm = oracle.value(plain(fit.resistor), r_worth, "+")
-    farad = oracle.value(plain(fit.capacitor), c_worth, "||")
+    ohm = oracle.value(plain(fit.slot("R").network), r_worth, "+")
+    farad = oracle.value(plain(fit.slot("C").network), c_worth, "||")
     return abs(ohm * farad * oracle.LN3 / oracle.fraction(target) - 1)
 
 
@@ -67,14 +76,14 @@ def compare(holdings, request):
     found = []
     for fit in answer.fits:
         size = exact_size(fit, ohms, farads, request.target)
-        r_parts, c_parts = ids(fit.resistor), ids(fit.capacitor)
+        r_parts, c_parts = parts_of(fit)
         found.append((oracle.ppm(size), len(r_parts + c_parts), size, r_parts, c_parts))
         assert math.isclose(abs(fit.error), size, rel_tol=1e-9, abs_tol=1e-12)
     expected = [row[:3] + row[4:] for row in everything[: request.top]]
     assert found == expected
     assert answer.searched.complete
     assert answer.searched.combinations == len(everything)
-    pairs = [(plain(fit.resistor), plain(fit.capacitor)) for fit in answer.fits]
+    pairs = [(plain(fit.slot("R").network), plain(fit.slot("C").network)) for fit in answer.fits]
     assert len(set(pairs)) == len(pairs)
 
 
@@ -145,7 +154,7 @@ def test_fewer_parts_win_only_among_equal_parts_per_million():
     holdings = [resistor(1, 5e3), resistor(2, 5000.001), resistor(3, 1e4), capacitor(11, 1e-6)]
     request = asked(10000.001 * 1e-6 * math.log(3), rank=Rank.ERROR, lifted=EVERY_RULE)
     first = find_fits(holdings, request).fits[0]
-    assert ids(first.resistor) == [3]
+    assert ohms_of(first) == [3]
     compare(holdings, request)
 
 
@@ -156,7 +165,7 @@ def test_no_more_parts_are_tried_once_they_cannot_win(monkeypatch):
     holdings = [resistor(1, 1e4), resistor(2, 2e4), capacitor(11, 1e-6)]
     request = asked(1e4 * 1e-6 * math.log(3), rank=Rank.ERROR, top=1, lifted=EVERY_RULE)
     answer = find_fits(holdings, request)
-    assert ids(answer.fits[0].resistor) == [1]
+    assert ohms_of(answer.fits[0]) == [1]
     assert not made
     assert answer.searched.complete
     # By hand: 10k, 20k, both in series and both in parallel, each with the one capacitor.
@@ -168,25 +177,25 @@ def test_no_more_parts_are_tried_once_they_cannot_win(monkeypatch):
 
 def real_space(holdings, request):
     """Every circuit that the rules allow, sized by the package's own interval formula."""
-    drive = typical(request.timer, request.supply)
+    drive, bounds = request.circuit.law, request.circuit.bounds
     leaks = {
-        holding.id: oracle.fraction(leak_conductance(holding.part, request.supply).typical)
+        holding.id: oracle.fraction(leak_conductance(holding.part, request.circuit.supply).typical)
         for holding in holdings
         if holding.part.kind is Kind.CAPACITOR
     }
     strict = Rule.RESISTOR_LIMITS not in request.lifted
-    least, most = limits(request.timer, request.supply) if strict else (0.0, math.inf)
+    least, most = (bounds.least, bounds.most) if strict else (0.0, math.inf)
 
     def size(ohm, farad, network):
         # Leaks are conductances: side by side they add.
         leak = float(oracle.value(network, leaks, "||"))
         if farad < oracle.fraction(1e-9) or not least <= ohm <= most:
             return None
-        if float(ohm) >= endless_from(leak, drive):
+        if float(ohm) >= drive.endless_from(leak):
             return None
         if strict and ohm > (1 - drive.threshold) / (3 * drive.threshold * leak):
             return None
-        time = float(interval(float(ohm), float(farad), leak, drive))
+        time = float(drive.interval(float(ohm), float(farad), leak))
         return abs(time / request.target - 1)
 
     ohms, farads = sides(holdings)
@@ -199,11 +208,11 @@ def compare_real(holdings, request):
     fits = find_fits(holdings, request).fits
     assert len(fits) == min(request.top, len(everything))
     for fit, row in zip(fits, everything, strict=False):
-        parts = len(ids(fit.resistor)) + len(ids(fit.capacitor))
+        parts = sum(map(len, parts_of(fit)))
         # Floats may round apart what is equal; sizes are compared instead of the parts.
         assert parts == row[1]
         assert abs(fit.error) == pytest.approx(row[2], rel=1e-9, abs=1e-11)
-    return [(ids(fit.resistor), ids(fit.capacitor)) for fit in fits] == [
+    return [parts_of(fit) for fit in fits] == [
         (row[4], row[5]) for row in everything[: request.top]
     ]
 

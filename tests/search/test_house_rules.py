@@ -5,13 +5,13 @@ from __future__ import annotations
 import math
 
 import pytest
-from stocks import asked, capacitor, ids, plain, resistor
+from stocks import asked, capacitor, farads_of, ohms_of, plain, resistor
 
+from chooser.circuits.circuit import Bounds
 from chooser.circuits.leakage import leak_conductance
-from chooser.circuits.monostable import endless_from, interval, limits, typical
 from chooser.errors import BadRequestError
 from chooser.search.find import find_fits
-from chooser.search.house_rules import LEAK_RATIO, leak_bound, resistor_limits
+from chooser.search.house_rules import LEAK_RATIO, resistor_bounds
 from chooser.search.terms import REASONS, USUAL_PARTS, Rank, Rule
 
 RANKS = list(Rank)
@@ -26,11 +26,11 @@ def refused(got, rule):
 
 
 def capacitors_of(got):
-    return {number for fit in got.fits for number in ids(fit.capacitor)}
+    return {number for fit in got.fits for number in farads_of(fit)}
 
 
 def resistors_of(got):
-    return {number for fit in got.fits for number in ids(fit.resistor)}
+    return {number for fit in got.fits for number in ohms_of(fit)}
 
 
 def test_every_rule_has_its_reason():
@@ -101,8 +101,8 @@ def test_every_kept_out_holding_is_named_once():
 @pytest.mark.parametrize("timer", ["bipolar", "cmos", "NE555", "LMC555", "ICM7555"])
 def test_the_resistor_stays_between_the_timers_limits(timer, rank):
     """The limits themselves are held against data sheets in the tests of the monostable."""
-    least, most = limits(asked(1, timer).timer, 9.0)
-    ohms = {1: least * 0.98, 2: least, 3: most, 4: most * 1.02}
+    bounds = asked(1, timer).circuit.bounds
+    ohms = {1: bounds.least * 0.98, 2: bounds.least, 3: bounds.most, 4: bounds.most * 1.02}
     holdings = [resistor(number, ohm) for number, ohm in ohms.items()]
     holdings += [capacitor(11, 1e-9, technology="polystyrene")]
     options = {"timer": timer, "rank": rank, "most_resistors": 1, "most_capacitors": 1}
@@ -118,11 +118,11 @@ def test_the_resistor_stays_between_the_timers_limits(timer, rank):
 
 def test_networks_are_held_to_the_limits_not_their_parts():
     holdings = [resistor(1, 600.0, 2), resistor(2, 1e7, 3), capacitor(11, 1e-9)]
-    ohms = {fit.resistance for fit in answer(holdings, 1e-6, rank=Rank.COUNT, top=99).fits}
-    least, most = limits(asked(1, "bipolar").timer, 9.0)
+    ohms = {fit.slot("R").value for fit in answer(holdings, 1e-6, rank=Rank.COUNT, top=99).fits}
+    bounds = asked(1, "bipolar").circuit.bounds
     # 600 + 600 passes; 10M || 10M || 10M is still beyond the 857k of 9 V.
     assert 1200.0 in ohms
-    assert all(least <= ohm <= most for ohm in ohms)
+    assert all(bounds.least <= ohm <= bounds.most for ohm in ohms)
 
 
 @pytest.mark.parametrize("rank", RANKS)
@@ -132,8 +132,9 @@ def test_a_leaky_capacitor_bounds_the_resistance(rank):
     leak = leak_conductance(holdings[0].part, 9.0).typical
     bound = 1 / (6 * leak)
     assert LEAK_RATIO == 3
-    assert bound == pytest.approx(float(leak_bound(leak, typical(asked(1, "bipolar").timer, 9.0))))
-    assert bound < limits(asked(1, "bipolar").timer, 9.0)[1]
+    circuit = asked(1, "bipolar").circuit
+    assert bound == pytest.approx(float(circuit.law.leak_bound(leak, LEAK_RATIO)))
+    assert bound < circuit.bounds.most
     holdings += [resistor(1, bound * 0.99), resistor(2, bound * 1.01)]
     options = {"rank": rank, "most_resistors": 1, "most_capacitors": 1}
     assert resistors_of(answer(holdings, 600.0, **options)) == {1}
@@ -144,20 +145,20 @@ def test_a_leaky_capacitor_bounds_the_resistance(rank):
 @pytest.mark.parametrize("rank", RANKS)
 def test_an_interval_that_never_ends_is_refused_whatever_is_lifted(rank):
     holdings = [capacitor(11, 1e-4, technology="electrolytic", voltage=16.0)]
-    drive = typical(asked(1, "bipolar").timer, 9.0)
+    law = asked(1, "bipolar").circuit.law
     leak = leak_conductance(holdings[0].part, 9.0).typical
-    end = float(endless_from(leak, drive))
+    end = float(law.endless_from(leak))
     holdings += [resistor(1, end * 0.999), resistor(2, end), resistor(3, end * 1.001)]
-    assert math.isinf(float(interval(end * 1.001, 1e-4, leak, drive)))
+    assert math.isinf(float(law.interval(end * 1.001, 1e-4, leak)))
     got = answer(
         holdings, 1e3, rank=rank, lifted=list(Rule), most_resistors=1, most_capacitors=1, top=99
     )
     assert resistors_of(got) == {1}
-    assert all(math.isfinite(fit.outlook.nominal) for fit in got.fits)
+    assert all(math.isfinite(fit.outlook.chief.nominal) for fit in got.fits)
 
 
 def test_the_ideal_timer_has_no_limits():
-    assert resistor_limits(asked(1.0)) == (0.0, math.inf)
+    assert resistor_bounds(asked(1.0)) == Bounds(0.0, math.inf)
     holdings = [resistor(1, 1.0), resistor(2, 1e9), capacitor(11, 1e-6)]
     got = answer(holdings, 1.0, timer="ideal", most_resistors=1)
     assert resistors_of(got) == {1, 2}
@@ -181,7 +182,7 @@ def series_of(got, numbers):
             return chained and network in numbers
         return any(inside(child, chained=chained or network[0] == "+") for child in network[1])
 
-    return any(inside(plain(fit.capacitor)) for fit in got.fits)
+    return any(inside(plain(fit.slot("C").network)) for fit in got.fits)
 
 
 POLAR = [
@@ -207,7 +208,7 @@ def test_polarised_capacitors_are_never_in_series(timer, rank):
 
 def test_polarised_capacitors_may_stand_side_by_side():
     got = answer(POLAR, 0.1, rank=Rank.COUNT, most_capacitors=2, top=500, most_resistors=1)
-    assert ("||", (11, 11)) in {plain(fit.capacitor) for fit in got.fits}
+    assert ("||", (11, 11)) in {plain(fit.slot("C").network) for fit in got.fits}
 
 
 @pytest.mark.parametrize("rank", RANKS)
@@ -216,10 +217,10 @@ def test_strays_rule_out_small_timing_capacitances(rank):
     holdings = [resistor(1, 1e5), capacitor(11, 4.7e-10, 3), capacitor(12, 1e-9, 2)]
     options = {"timer": "ideal", "rank": rank, "most_capacitors": 3, "top": 500}
     strict = answer(holdings, 1e-4, **options)
-    assert min(fit.capacitance for fit in strict.fits) == 1e-9
-    assert ("||", (11, 11, 11)) in {plain(fit.capacitor) for fit in strict.fits}
+    assert min(fit.slot("C").value for fit in strict.fits) == 1e-9
+    assert ("||", (11, 11, 11)) in {plain(fit.slot("C").network) for fit in strict.fits}
     lifted = answer(holdings, 1e-4, lifted=[Rule.STRAYS], **options)
-    assert 4.7e-10 in {fit.capacitance for fit in lifted.fits}
+    assert 4.7e-10 in {fit.slot("C").value for fit in lifted.fits}
 
 
 @pytest.mark.parametrize(
@@ -255,5 +256,5 @@ def test_five_resistors_are_searched_when_asked_for():
         holdings, 5e-3 * math.log(3), timer="ideal", rank=Rank.ERROR,
         lifted=[Rule.MANY_PARTS], most_resistors=5, top=1,
     )  # fmt: skip
-    assert ids(got.fits[0].resistor) == [1] * 5
+    assert ohms_of(got.fits[0]) == [1] * 5
     assert got.fits[0].error == pytest.approx(0, abs=1e-12)

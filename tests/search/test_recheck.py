@@ -6,7 +6,7 @@ import math
 from dataclasses import replace
 
 import pytest
-from stocks import EVERY_RULE, asked, capacitor, found, resistor
+from stocks import EVERY_RULE, asked, capacitor, found, resistor, with_slot
 
 from chooser.errors import Exit, SelfCheckError
 from chooser.networks import Group, Join, Leaf
@@ -25,6 +25,10 @@ OTHER = replace(HOLDINGS[0], part=replace(HOLDINGS[0].part, value=9e3))
 REQUEST = asked(0.02, rank=Rank.ERROR)
 
 
+def with_error(fit, error):
+    return replace(fit, error=error, errors={"interval": error})
+
+
 def fits(timer="ideal", **options):
     return find_fits(HOLDINGS, asked(0.02, timer, rank=Rank.ERROR, **options)).fits
 
@@ -38,33 +42,36 @@ def test_right_fits_pass(timer):
 @pytest.mark.parametrize(
     "wrong",
     [
-        lambda fit: {"resistance": fit.resistance * (1 + 1e-6)},
-        lambda fit: {"capacitance": fit.capacitance * (1 - 1e-6)},
-        lambda _: {"resistor": Leaf(OTHER)},
-        lambda fit: {"error": fit.error + 1e-6},
-        lambda fit: {"error": -fit.error},
+        lambda fit: with_slot(fit, "R", value=fit.slot("R").value * (1 + 1e-6)),
+        lambda fit: with_slot(fit, "C", value=fit.slot("C").value * (1 - 1e-6)),
+        lambda fit: with_slot(fit, "R", network=Leaf(OTHER)),
+        lambda fit: with_error(fit, fit.error + 1e-6),
+        lambda fit: with_error(fit, -fit.error),
+        # The error that places the fit and the one of its output must both be right.
+        lambda fit: replace(fit, error=fit.error + 1e-6),
+        lambda fit: replace(fit, errors={"interval": fit.error + 1e-6}),
     ],
 )
 def test_wrong_figures_are_stopped(wrong):
     fit = fits()[3]
     with pytest.raises(SelfCheckError, match="own check failed") as stopped:
-        recheck(replace(fit, **wrong(fit)), REQUEST)
+        recheck(wrong(fit), REQUEST)
     assert stopped.value.status is Exit.OUR_FAULT
 
 
 def test_a_wrong_error_of_a_real_timer_is_stopped():
     fit = fits("bipolar")[0]
     with pytest.raises(SelfCheckError):
-        recheck(replace(fit, error=fit.error + 0.1), asked(0.02, "bipolar"))
+        recheck(with_error(fit, fit.error + 0.1), asked(0.02, "bipolar"))
 
 
 @pytest.mark.parametrize(("boards", "fine"), [(1, True), (2, False)])
 def test_parts_that_are_not_there_are_stopped(boards, fine):
     """Two of holding 1 are there: enough for one board of two, not for two."""
     resistors = Group(Join.SERIES, (Leaf(HOLDINGS[0]), Leaf(HOLDINGS[0])))
-    fit = replace(fits()[0], resistor=resistors, resistance=2e4, capacitor=Leaf(HOLDINGS[2]))
-    error = 2e4 * 1e-6 * math.log(3) / 0.02 - 1
-    fit = replace(fit, capacitance=1e-6, error=error)
+    fit = with_slot(fits()[0], "R", network=resistors, value=2e4)
+    fit = with_slot(fit, "C", network=Leaf(HOLDINGS[2]), value=1e-6)
+    fit = with_error(fit, 2e4 * 1e-6 * math.log(3) / 0.02 - 1)
     if fine:
         recheck(fit, asked(0.02, boards=boards))
     else:
@@ -74,10 +81,10 @@ def test_parts_that_are_not_there_are_stopped(boards, fine):
 
 def test_claimed_parts_are_not_there():
     claimed = replace(HOLDINGS[0], claimed=2)
-    fit = replace(fits(most_resistors=1)[0], resistor=Leaf(claimed), resistance=1e4)
-    error = 1e4 * fit.capacitance * math.log(3) / 0.02 - 1
+    fit = with_slot(fits(most_resistors=1)[0], "R", network=Leaf(claimed), value=1e4)
+    error = 1e4 * fit.slot("C").value * math.log(3) / 0.02 - 1
     with pytest.raises(SelfCheckError):
-        recheck(replace(fit, error=error), REQUEST)
+        recheck(with_error(fit, error), REQUEST)
 
 
 def test_a_wrong_fit_never_reaches_anybody(monkeypatch):
@@ -85,7 +92,7 @@ def test_a_wrong_fit_never_reaches_anybody(monkeypatch):
 
     def wrong(*given):
         fit = right(*given)
-        return replace(fit, resistance=fit.resistance * 1.001)
+        return with_slot(fit, "R", value=fit.slot("R").value * 1.001)
 
     monkeypatch.setattr(find, "fit_of", wrong)
     with pytest.raises(SelfCheckError):

@@ -1,0 +1,198 @@
+"""What is wanted of a circuit: from the words of a command to targets."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping
+from typing import TYPE_CHECKING, Any
+
+from chooser.errors import BadRequestError
+
+if TYPE_CHECKING:
+    from chooser.circuits.circuit import Circuit
+    from chooser.search.request import Target
+
+Options = Mapping[str, Any]
+
+BELOW_HALF = (
+    "for less, steer the charging with a diode (`fit steered`), or hang the load between output "
+    "and supply, so that it is on in the low time (--on, --off, --active low)"
+)
+
+
+def interval_targets(options: Options, circuit: Circuit) -> tuple[Target, ...]:
+    """Return the one interval that is wanted; none where nothing was said (of a check)."""
+    from chooser.quantities import format_duration, is_range, parse_duration
+    from chooser.search.request import Target
+
+    text = options["target"]
+    if text is None:
+        return ()
+    if is_range(text):
+        raise BadRequestError(
+            f"{text!r} is a range; name the one interval that is wanted, such as 30s."
+        )
+    wanted = parse_duration(text)
+    if options["fits"] and wanted < circuit.shortest:
+        raise BadRequestError(
+            f"The {circuit.device} cannot make {format_duration(wanted)}: its own delays rule "
+            f"below {format_duration(circuit.shortest, digits=3)}; take a faster one "
+            "(--timer cmos), or a logic one-shot (`fit logic-monostable`)."
+        )
+    return (Target("interval", wanted, wanted),)
+
+
+def value_targets(output: str) -> Callable[[Options, Circuit], tuple[Target, ...]]:
+    """Return how the value of a plain network is read."""
+
+    def targets(options: Options, _circuit: Circuit) -> tuple[Target, ...]:
+        from chooser.quantities import parse_capacitance, parse_resistance
+        from chooser.search.request import Target
+
+        if options["target"] is None:
+            return ()
+        parse = parse_resistance if output == "resistance" else parse_capacitance
+        wanted = parse(options["target"])
+        return (Target(output, wanted, wanted),)
+
+    return targets
+
+
+def period_targets(options: Options, circuit: Circuit) -> tuple[Target, ...]:
+    """Return the period of an oscillator whose duty is what it is."""
+    period = _period(options, circuit)
+    if period is None and options["fits"]:
+        raise BadRequestError("Say what is wanted: --frequency 440Hz or --period 2ms.")
+    return () if period is None else (period,)
+
+
+def high_low_targets(options: Options, circuit: Circuit) -> tuple[Target, ...]:
+    """Return what is wanted of an oscillator whose two times can be chosen.
+
+    Raises
+    ------
+    BadRequestError
+        Nothing, too much or half of it was said, or what the circuit cannot do.
+    """
+    pairs = [
+        name
+        for name, given in (
+            ("--high and --low", _any(options, "high", "low")),
+            ("--on and --off", _any(options, "on", "off")),
+            ("--frequency or --period", _any(options, "frequency", "period", "duty")),
+        )
+        if given
+    ]
+    if len(pairs) > 1:
+        raise BadRequestError(f"Say it one way only: {' or '.join(pairs)}.")
+    if not pairs:
+        if not options["fits"]:
+            return ()
+        raise BadRequestError(
+            "Say what is wanted: --high 2s --low 1s, or --frequency 440Hz --duty 50..60%, or "
+            "--on 1s --off 3s."
+        )
+    if _any(options, "frequency", "period", "duty"):
+        targets = _period_and_duty(options, circuit)
+    else:
+        targets = _two_times(options)
+    if options["fits"]:
+        _check_possible(targets, circuit)
+    return targets
+
+
+def _any(options: Options, *names: str) -> bool:
+    return any(options[name] is not None for name in names)
+
+
+def _two_times(options: Options) -> tuple[Target, ...]:
+    from chooser.quantities import parse_duration
+    from chooser.search.request import Target
+
+    first, second = ("high", "low") if _any(options, "high", "low") else ("on", "off")
+    for one, other in ((first, second), (second, first)):
+        if options[one] is None:
+            raise BadRequestError(
+                f"--{other} alone does not say how long the {one} time is; add --{one}."
+            )
+    times = [parse_duration(options[name]) for name in (first, second)]
+    if first == "on" and options["active"] == "low":
+        times.reverse()
+    return tuple(
+        Target(name, time, time) for name, time in zip(("high", "low"), times, strict=True)
+    )
+
+
+def _period(options: Options, circuit: Circuit) -> Target | None:
+    """Return the target that a frequency or a period makes; a frequency ranks as its period."""
+    from chooser.quantities import format_duration, parse_duration, parse_frequency
+    from chooser.search.request import Target
+
+    if options["frequency"] is not None and options["period"] is not None:
+        raise BadRequestError("--frequency and --period say the same; leave one out.")
+    if options["frequency"] is not None:
+        hertz = parse_frequency(options["frequency"])
+        period, asked = 1.0 / hertz, hertz
+    elif options["period"] is not None:
+        period, asked = parse_duration(options["period"]), None
+    else:
+        return None
+    if options["fits"] and period < circuit.shortest:
+        raise BadRequestError(
+            f"The {circuit.device} cannot oscillate so fast: its own delays rule below "
+            f"{format_duration(circuit.shortest, digits=3)}; take a faster one (--timer cmos), or "
+            "a Schmitt inverter (`fit schmitt`)."
+        )
+    return Target("period", period, period, asked)
+
+
+def _period_and_duty(options: Options, circuit: Circuit) -> tuple[Target, ...]:
+    from chooser.search.request import ANY_DUTY, Target
+
+    period = _period(options, circuit)
+    if period is None:
+        raise BadRequestError("--duty alone does not say how fast; add --frequency or --period.")
+    if options["duty"] is None:
+        # Any duty will do that the circuit can have.
+        return (
+            (period,) if not options["fits"] else (period, Target("duty", ANY_DUTY, 1 - ANY_DUTY))
+        )
+    low, high = _duty(options["duty"])
+    return (period, Target("duty", low, high))
+
+
+def _duty(text: str) -> tuple[float, float]:
+    from chooser.quantities import is_range, parse_percent, parse_percent_range
+
+    if is_range(text):
+        span = parse_percent_range(text)
+        low, high = span.low, span.high
+    else:
+        low = high = parse_percent(text)
+    if not 0.0 < low <= high < 1.0:
+        raise BadRequestError(
+            f"A duty of {text} is no oscillation; write one between 0% and 100%, such as 60%."
+        )
+    return low, high
+
+
+def _check_possible(targets: tuple[Target, ...], circuit: Circuit) -> None:
+    """Refuse what a circuit that charges through both resistors cannot do."""
+    from chooser.quantities import format_percent
+
+    wanted = {target.output: target for target in targets}
+    most = (
+        wanted["duty"].high
+        if "duty" in wanted
+        else wanted["high"].low / (wanted["high"].low + wanted["low"].low)
+    )
+    if most > circuit.twin.least_duty:
+        return
+    if abs(most - 0.5) < 1e-3:  # noqa: PLR2004 - a half, as people round it
+        raise BadRequestError(
+            "A duty of 50% would need RA = 0, which shorts the supply through the discharge pin; "
+            f"take the output-fed circuit (`fit output-fed`), or `fit steered`: {BELOW_HALF}."
+        )
+    raise BadRequestError(
+        "A plain astable is high for more than half of its period, and "
+        f"{format_percent(most, digits=3)} was asked: {BELOW_HALF}."
+    )

@@ -1,0 +1,449 @@
+"""Two resistors that share a capacitor and a stock: the exact orders against plain listing."""
+
+from __future__ import annotations
+
+import math
+import random
+from dataclasses import dataclass
+from itertools import product
+
+import joint_oracle
+import numpy as np
+import oracle
+import pytest
+from stocks import EVERY_RULE, capacitor, plain, random_stock, resistor, sides
+
+from chooser.circuits.astable import astable
+from chooser.circuits.circuit import Circuit
+from chooser.circuits.diodes import diode_named
+from chooser.circuits.leakage import leak_conductance
+from chooser.circuits.steered import steered
+from chooser.circuits.timers import timer_named
+from chooser.parts import Kind
+from chooser.search import space, windows
+from chooser.search.find import find_fits, search_choices
+from chooser.search.house_rules import usable_parts
+from chooser.search.joint import Inverse, box_of, errors_of, widest
+from chooser.search.request import Request, Target
+from chooser.search.space import Space, combinations
+from chooser.search.tables import every_network
+from chooser.search.terms import Rank, Rule
+
+IDEAL = timer_named("ideal")
+PLAIN = astable(IDEAL, 9.0)
+STEERED = steered(IDEAL, 9.0, diode_named("ideal"))
+ORDERS = (Rank.ERROR, Rank.COUNT)
+WISHES = ("both times", "period and duty", "period and range", "period alone")
+ANY_DUTY = Target("duty", 1e-6, 1 - 1e-6)
+
+
+def exactly(output, value):
+    return Target(output, value, value)
+
+
+def rounded(value, digits=6):
+    return float(f"{value:.{digits}g}")
+
+
+def random_targets(rnd, wish, high, low):
+    """Targets near two times in second; of a duty, a value or a range around theirs."""
+    high, low = (rounded(time * rnd.choice((1, 1, rnd.uniform(0.8, 1.25)))) for time in (high, low))
+    if wish == "both times":
+        return (exactly("high", high), exactly("low", low))
+    period, duty = exactly("period", rounded(high + low)), rounded(high / (high + low))
+    if wish == "period alone":
+        return (period, ANY_DUTY)
+    if wish == "period and duty":
+        return (period, exactly("duty", duty))
+    width = rnd.uniform(0.01, 0.1)
+    ends = max(duty - width * rnd.random(), 0.01), min(duty + width, 0.99)
+    return (period, Target("duty", *map(rounded, ends)))
+
+
+def random_times(rnd, holdings):
+    """Times of single parts of the stock, so that hits and near misses are common."""
+    ohms, farads = ([value for value, _ in side.values()] for side in sides(holdings))
+    farad = rnd.choice(farads)
+    return tuple(rnd.choice(ohms) * farad * math.log(2) * rnd.choice((0.5, 1, 1, 2)) for _ in "HL")
+
+
+def random_request(rnd, circuit, holdings, wish, **options):
+    high, low = random_times(rnd, holdings)
+    chosen = {
+        "rank": rnd.choice(ORDERS),
+        "boards": rnd.choice((1, 1, 2, 3)),
+        "most_resistors": rnd.choice((1, 2, 2)),
+        "most_capacitors": rnd.choice((1, 2)),
+        "top": rnd.choice((1, 3, 10, 25)),
+        "lifted": EVERY_RULE,
+    }
+    return Request(circuit, random_targets(rnd, wish, high, low), **(chosen | options))
+
+
+def wanted_of(request):
+    return [(target.output, target.low, target.high) for target in request.targets]
+
+
+def patch_to(patch, path, rnd):
+    """Force one way through the windows; small limits make small stocks take the long way."""
+    if path != "listed":
+        patch.setattr(space, "MOST_LISTED", rnd.choice((0, 2, 5, 10)))
+    if path == "sieved":
+        patch.setattr(windows, "WORTH", 0)
+    if path == "batches":
+        patch.setattr(windows, "MOST_PAIRS", rnd.randint(1, 5))
+
+
+# The textbook: all in fractions ------------------------------------------------------------------
+
+
+def listed(holdings, request, *, is_steered):
+    """Every circuit of the space, and the first places of it in order."""
+    ohms, farads = sides(holdings)
+    most = request.most_resistors, request.most_capacitors
+    rows = joint_oracle.circuits(ohms, farads, most, request.boards)
+    wanted = wanted_of(request)
+
+    def rough(row):
+        high, low = joint_oracle.textbook(row, steered=is_steered)
+        return joint_oracle.miss((float(high), float(low)), wanted)
+
+    def size(row):
+        return joint_oracle.miss(joint_oracle.textbook(row, steered=is_steered), wanted)
+
+    near = joint_oracle.shortlist(rows, rough, request.rank, request.top)
+    uses = joint_oracle.all_uses(ohms, farads, request.boards)
+    return rows, joint_oracle.ranked(near, size, uses, request.rank)[: request.top]
+
+
+def compare(holdings, request, *, is_steered):
+    """Hold the choices against the first places of the whole space, down to the holding ids."""
+    rows, expected = listed(holdings, request, is_steered=is_steered)
+    usable = usable_parts(holdings, request)
+    found, not_listed = search_choices(usable, request)
+    assert not not_listed
+    assert combinations(usable.resistors, usable.capacitors, request) == len(rows)
+    given = []
+    for choice in found:
+        resistors = sorted(id_ for each in choice.resistors for id_ in oracle.parts_of(plain(each)))
+        capacitors = oracle.parts_of(plain(choice.capacitors[0]))
+        pairing = choice.pairing
+        given.append((pairing.ppm, pairing.parts, pairing.size, resistors, capacitors))
+    assert given == [row[:3] + row[4:6] for row in expected]
+    written = [(*map(plain, c.resistors), *map(plain, c.capacitors)) for c in found]
+    assert len(set(written)) == len(written)
+
+
+@pytest.mark.parametrize("wish", WISHES)
+@pytest.mark.parametrize("circuit", [PLAIN, STEERED], ids=["plain", "steered"])
+def test_the_first_answers_are_those_of_the_whole_space(monkeypatch, circuit, wish):
+    rnd = random.Random(f"{circuit.family} {wish}")
+    for _ in range(30):
+        holdings = random_stock(rnd, 3, 2)
+        with monkeypatch.context() as patch:
+            patch_to(patch, rnd.choice(("listed", "split", "sieved", "batches")), rnd)
+            request = random_request(rnd, circuit, holdings, wish)
+            compare(holdings, request, is_steered=circuit is STEERED)
+
+
+@pytest.mark.slow
+@pytest.mark.parametrize("wish", WISHES)
+@pytest.mark.parametrize("circuit", [PLAIN, STEERED], ids=["plain", "steered"])
+@pytest.mark.parametrize("seed", range(5))
+def test_the_first_answers_of_thousands_of_stocks(monkeypatch, circuit, wish, seed):
+    rnd = random.Random(f"{circuit.family} {wish} {seed}")
+    for _ in range(80):
+        holdings = random_stock(rnd, rnd.choice((2, 3, 3, 4)), rnd.choice((1, 2, 3)))
+        most = rnd.choice((1, 2, 2, 2)) if len(holdings) > 4 else rnd.choice((2, 3))
+        with monkeypatch.context() as patch:
+            patch_to(patch, rnd.choice(("listed", "split", "sieved", "batches")), rnd)
+            request = random_request(rnd, circuit, holdings, wish, most_resistors=most)
+            compare(holdings, request, is_steered=circuit is STEERED)
+
+
+def test_one_drawer_is_shared_by_both_resistors():
+    """Two 10k in all: RA and RB take one each, and none is left for a second in either."""
+    holdings = [resistor(1, 1e4, 2), resistor(2, 1e5, 1), capacitor(11, 1e-6)]
+    targets = (exactly("high", 2e4 * 1e-6 * math.log(2)), exactly("low", 1e-2 * math.log(2)))
+    request = Request(PLAIN, targets, rank=Rank.ERROR, top=1)
+    (best,) = find_fits(holdings, request).fits
+    assert best.errors == {"high": 0.0, "low": 0.0}
+    assert [plain(slot.network) for slot in best.slots] == [1, 1, 11]
+    compare(holdings, request, is_steered=False)
+    # For two boards there are only two 10k for four places: the same wish must be missed.
+    twice = Request(PLAIN, targets, rank=Rank.ERROR, top=1, boards=2)
+    assert find_fits([*holdings[:2], capacitor(11, 1e-6, 2)], twice).fits == ()
+
+
+def test_equal_drawers_are_taken_from_by_plenty_and_then_by_number():
+    """Six bags of one value: many ways to one circuit, the most plentiful bags first."""
+    counts = (1, 2, 2, 5, None, 1)
+    holdings = [resistor(number, 1e4, count) for number, count in enumerate(counts, 1)]
+    holdings += [capacitor(11, 1e-6, 3), capacitor(12, 1e-6, None)]
+    targets = (exactly("high", 2e-2 * math.log(2)), exactly("low", 1e-2 * math.log(2)))
+    for rank, boards, top in product(ORDERS, (1, 2), (1, 5, 25)):
+        options = {"boards": boards, "top": top, "most_resistors": 2, "most_capacitors": 1}
+        request = Request(PLAIN, targets, rank=rank, lifted=EVERY_RULE, **options)
+        compare(holdings, request, is_steered=False)
+    (first, *_) = find_fits(holdings, Request(PLAIN, targets, rank=Rank.ERROR)).fits
+    assert [plain(slot.network) for slot in first.slots] == [5, 5, 12]
+
+
+def test_a_whole_answer_is_complete_and_counts_what_it_covered():
+    rnd = random.Random("answers")
+    for _ in range(15):
+        holdings = random_stock(rnd, 3, 2)
+        request = random_request(rnd, PLAIN, holdings, rnd.choice(WISHES), top=4)
+        rows, expected = listed(holdings, request, is_steered=False)
+        answer = find_fits(holdings, request)
+        assert answer.searched.complete
+        assert answer.searched.combinations == len(rows)
+        assert len(answer.fits) == len(expected)
+        for fit, row in zip(answer.fits, expected, strict=True):
+            assert fit.parts == row[1]
+            assert abs(fit.error) == pytest.approx(float(row[2]), rel=1e-9, abs=1e-12)
+            assert abs(fit.error) == max(map(abs, fit.errors.values()))
+
+
+# Real devices ------------------------------------------------------------------------------------
+
+DROP = 0.6
+
+
+def real_circuit(rnd):
+    """A circuit with currents, and the oracle's description of it."""
+    timer, supply = timer_named(rnd.choice(("bipolar", "cmos", "NE555", "TLC555"))), 9.0
+    drop = rnd.choice((None, DROP))
+    control = rnd.choice((None, None, 4.5))
+    circuit = astable(timer, supply, control)
+    if drop is not None:
+        circuit = steered(timer, supply, diode_named(f"{DROP}V"), control=control)
+    upper = 2 / 3 if control is None else control / supply
+    figures = joint_oracle.Currents(
+        supply,
+        upper,
+        upper / 2,
+        timer.threshold_current_typical,
+        timer.discharge_leakage_typical,
+        timer.discharge_resistance_typical,
+        drop,
+    )
+    return circuit, figures
+
+
+def leaky_stock(rnd, top=7.0):
+    """Three digits a value, capacitors that leak more or less, a few pieces each."""
+    holdings = [
+        resistor(number, rounded(10 ** rnd.uniform(2.5, top), 3), rnd.choice((1, 2, 3)))
+        for number in range(1, rnd.randint(2, 5))
+    ]
+    kinds = ("polyester", "c0g", "electrolytic", "electrolytic-non-polar", "tantalum")
+    for number in range(11, rnd.randint(12, 14)):
+        farad = rounded(10 ** rnd.uniform(-9.3, -4), 3)
+        kind = rnd.choice(kinds)
+        holdings.append(capacitor(number, farad, rnd.choice((1, 2)), technology=kind))
+    return holdings
+
+
+@dataclass
+class Rules:
+    """What may be built: the device's limits from its record, the leakage rule from its words."""
+
+    circuit: Circuit
+    figures: joint_oracle.Currents
+    strict: bool
+
+    def allow(self, row, leak, times):
+        if not all(math.isfinite(time) and time > 0 for time in times):
+            return False
+        if not self.strict:
+            return True
+        (ra, rb), bounds = map(float, row.ohms), self.circuit.bounds
+        charging = ra if self.circuit.family == "steered" else ra + rb
+        # At the trip point three times the leak must still flow through the resistor.
+        trip = self.figures.supply * self.figures.upper
+        left = self.figures.supply - trip - (self.figures.drop or 0.0)
+        switch = self.figures.into_switch if self.circuit.family == "steered" else 0.0
+        # A board leaks past the resistor that only discharges as well, so its limit is the same.
+        largest = max(charging, rb)
+        leaked = largest * (3 * leak * trip + switch) <= left
+        return min(ra, rb) >= bounds.least and largest <= bounds.most and leaked
+
+
+def real_rows(holdings, request, figures):
+    """Every allowed circuit with the error that the charging equation gives it."""
+    ohms, farads = sides(holdings)
+    strict = Rule.RESISTOR_LIMITS not in request.lifted
+    polar = {
+        holding.id
+        for holding in holdings
+        if strict and holding.part.technology in ("electrolytic", "tantalum")
+    }
+    leaks = {
+        holding.id: (leak_conductance(holding.part, 9.0).typical, None)
+        for holding in holdings
+        if holding.part.kind is Kind.CAPACITOR
+    }
+    most = request.most_resistors, request.most_capacitors
+    rules, wanted = Rules(request.circuit, figures, strict), wanted_of(request)
+    errors = {}
+    rows = joint_oracle.circuits(ohms, farads, most, request.boards, polar)
+    for row in rows:
+        leak = float(joint_oracle.value_of(row.c, leaks, "||"))
+        times = figures.times(row, leak)
+        if row.farad >= oracle.fraction(1e-9) and rules.allow(row, leak, times):
+            errors[row] = joint_oracle.miss(times, wanted)
+    return rows, errors
+
+
+def compare_real(holdings, request, figures):
+    """Hold errors and parts, place by place, and the parts themselves where nothing is tied."""
+    rows, errors = real_rows(holdings, request, figures)
+    uses = joint_oracle.all_uses(*sides(holdings), request.boards)
+    expected = joint_oracle.ranked(list(errors), errors.__getitem__, uses, request.rank)
+    answer = find_fits(holdings, request)
+    assert answer.searched.combinations == len(rows)
+    assert len(answer.fits) == min(request.top, len(expected))
+    same = 0
+    for fit, row in zip(answer.fits, expected, strict=False):
+        assert fit.parts == row[1]
+        assert abs(fit.error) == pytest.approx(row[2], rel=1e-8, abs=1e-10)
+        same += sorted(holding.id for holding in fit.holdings()) == sorted(row[4] + row[5])
+    return same, len(answer.fits)
+
+
+def run_real(monkeypatch, rnd, trials):
+    same = total = 0
+    for _ in range(trials):
+        circuit, figures = real_circuit(rnd)
+        holdings = leaky_stock(rnd)
+        lifted = rnd.choice((frozenset(), EVERY_RULE - {Rule.STRAYS}))
+        request = random_request(
+            rnd, circuit, holdings, rnd.choice(WISHES), lifted=lifted, top=rnd.choice((1, 3, 6))
+        )
+        with monkeypatch.context() as patch:
+            patch_to(patch, rnd.choice(("listed", "split", "sieved")), rnd)
+            one, of = compare_real(holdings, request, figures)
+        same, total = same + one, total + of
+    return same, total
+
+
+@pytest.mark.parametrize("seed", range(3))
+def test_real_timers_against_every_circuit(monkeypatch, seed):
+    same, total = run_real(monkeypatch, random.Random(f"real {seed}"), 20)
+    assert total > 20
+    assert same > 0.9 * total  # but for the rare pair that only rounding tells apart
+
+
+@pytest.mark.slow
+@pytest.mark.parametrize("seed", range(8))
+def test_real_timers_on_many_stocks(monkeypatch, seed):
+    run_real(monkeypatch, random.Random(f"many real {seed}"), 100)
+
+
+def test_a_time_that_never_ends_is_no_answer():
+    """90M beside what a bipolar switch leaks: the node never reaches the trip point."""
+    holdings = [resistor(1, 9e7), resistor(2, 1e6), capacitor(11, 1e-7)]
+    circuit = astable(timer_named("NE555"), 9.0)
+    targets = (exactly("high", 10.0), exactly("low", 0.1))
+    endless = circuit.twin.times((9e7, 1e6), 1e-7, 0.0)[0]
+    assert np.isinf(endless)
+    for rank in Rank:
+        fits = find_fits(holdings, Request(circuit, targets, rank=rank, lifted=EVERY_RULE)).fits
+        assert all(math.isfinite(fit.outlook.of("high").nominal) for fit in fits)
+        assert all(math.isfinite(fit.error) for fit in fits)
+
+
+# Windows -----------------------------------------------------------------------------------------
+
+
+def crossed(spaced, slots):
+    """Values of every pair of networks of one or two resistors, each on every capacitor network."""
+    tables = (rows for size in (1, 2) for rows in every_network(spaced.resistor_tables, size))
+    values = np.concatenate([rows.value for rows in tables])
+    axes = values, values, np.arange(len(slots))
+    return [each.ravel() for each in np.meshgrid(*axes, indexing="ij")]
+
+
+def missed(circuit, holdings, targets, errors):
+    """Count circuits within each of falling errors, and those outside their own window."""
+    request = Request(circuit, targets, most_resistors=2, lifted=EVERY_RULE)
+    spaced = Space([h for h in holdings if h.id < 11], [h for h in holdings if h.id > 10], request)
+    inside = out = 0
+    for capacitors in (1, 2):
+        slots = spaced.slots(capacitors)
+        inverse = Inverse(circuit.twin, slots, widest(spaced, slots))
+        ra, rb, slot = crossed(spaced, slots)
+        times = circuit.twin.times((ra, rb), slots.farad[slot], slots.leak[slot])
+        made = errors_of(request, times)
+        for error in errors:
+            box = box_of(targets, error)
+            ends = inverse.windows(box, error)
+            near = made <= error
+            a, b, where = ra[near], rb[near], slot[near]
+            to_a, to_b = (tuple(end[where] for end in each) for each in (ends.ra, ends.rb))
+            checked = [(a, to_a), (b, to_b)]
+            checked.append((a, inverse.ra_beside(box, b, to_a, where).ra))
+            checked.append((b, inverse.rb_beside(box, a, to_b, where).rb))
+            held = [
+                (low * (1 - windows.ROUNDING) <= value) & (value <= high * (1 + windows.ROUNDING))
+                for value, (low, high) in checked
+            ]
+            inside += len(a)
+            out += len(a) - int(np.logical_and.reduce(held).sum())
+    return inside, out
+
+
+def random_twin(rnd):
+    timer = timer_named(rnd.choice(("ideal", "bipolar", "cmos", "NE555", "ICM7555")))
+    control = rnd.choice((None, 3.0, 6.5))
+    if rnd.random() < 0.4:
+        return astable(timer, 9.0, control)
+    diode = diode_named(rnd.choice(("silicon", "schottky", "0.6V", "ideal")))
+    both = rnd.random() < 0.5 and control != 3.0
+    return steered(timer, 9.0, diode, both=both, control=control)
+
+
+def sweep_windows(rnd, trials):
+    total = 0
+    for _ in range(trials):
+        circuit, holdings = random_twin(rnd), leaky_stock(rnd)
+        targets = random_targets(rnd, rnd.choice(WISHES), *random_times(rnd, holdings))
+        errors = sorted((10 ** rnd.uniform(-6, 1.5) for _ in range(3)), reverse=True)
+        inside, out = missed(circuit, holdings, targets, errors)
+        assert not out, (circuit.family, circuit.device, targets, errors)
+        total += inside
+    return total
+
+
+def test_windows_hold_every_circuit_within_their_error():
+    assert sweep_windows(random.Random("windows"), 25) > 500
+
+
+@pytest.mark.slow
+@pytest.mark.parametrize("seed", range(6))
+def test_windows_hold_every_circuit_of_many_stocks(seed):
+    sweep_windows(random.Random(f"windows {seed}"), 100)
+
+
+@pytest.mark.parametrize("wish", WISHES)
+def test_the_box_holds_exactly_the_times_within_an_error(wish):
+    """The box is no wider than the targets say: its corners in turn break some target."""
+    rnd = random.Random(f"box {wish}")
+    for _ in range(200):
+        high, low = 10 ** rnd.uniform(-3, 1), 10 ** rnd.uniform(-3, 1)
+        targets = random_targets(rnd, wish, high, low)
+        error = 10 ** rnd.uniform(-6, 1)
+        request = Request(STEERED, targets)
+        box = box_of(targets, error)
+        times = np.array([10 ** rnd.uniform(-4, 2) for _ in range(64)]) * high
+        others = np.array([10 ** rnd.uniform(-4, 2) for _ in range(64)]) * low
+        within = errors_of(request, (times, others)) <= error
+        assert (times[within] >= box.high[0] * (1 - 1e-12)).all()
+        assert (times[within] <= box.high[1] * (1 + 1e-12)).all()
+        assert (others[within] >= box.low[0] * (1 - 1e-12)).all()
+        assert (others[within] <= box.low[1] * (1 + 1e-12)).all()
+        if wish == "both times":
+            inside = (times >= box.high[0]) & (times <= box.high[1])
+            inside &= (others >= box.low[0]) & (others <= box.low[1])
+            assert (errors_of(request, (times, others))[inside] <= error * (1 + 1e-9)).all()
