@@ -22,6 +22,11 @@ def check_control(timer: Timer, supply: float, control: float) -> float:
         Below about a volt, or so near to the supply that the interval would hardly end.
     """
     most = HIGHEST * supply
+    if most < LOWEST_VOLT:
+        raise BadRequestError(
+            f"A supply of {format_voltage(supply)} leaves no room for a control voltage; "
+            "take a higher supply or leave the control pin alone."
+        )
     if LOWEST_VOLT <= control <= most:
         return control
     raise BadRequestError(

@@ -31,16 +31,20 @@ def delay(supply: float, threshold: float, error: Tolerance) -> Circuit:
     Raises
     ------
     BadRequestError
-        A threshold that is not reached in good time.
+        A threshold that may not be reached in good time.
     """
-    if not 0.0 < threshold <= HIGHEST:
+    if not threshold > 0.0:
         raise BadRequestError(
-            f"A threshold of {format_percent(threshold, digits=3)} of the supply is not reached "
-            f"in any dependable time; write one below {format_percent(HIGHEST)}."
+            "A threshold at or below 0 V is reached at once; write one such as 50% or 2.5V."
+        )
+    most = threshold * (1.0 + error.plus)
+    if most > HIGHEST:
+        raise BadRequestError(
+            f"A threshold that may be {format_percent(most, digits=3)} of the supply is not "
+            f"reached in any dependable time; it has to stay below {format_percent(HIGHEST)}."
         )
     usual = _factor(threshold)
     least = _factor(threshold * (1.0 - error.minus))
-    most = _factor(min(threshold * (1.0 + error.plus), HIGHEST))
     law = Phase(supply, threshold)
     return Circuit(
         family="delay",
@@ -52,7 +56,7 @@ def delay(supply: float, threshold: float, error: Tolerance) -> Circuit:
         outputs=("interval",),
         typical=law,
         corners=(law,),
-        error=Tolerance(1.0 - least / usual, most / usual - 1.0),
+        error=Tolerance(1.0 - least / usual, _factor(most) / usual - 1.0),
         bounds=Bounds(0.0, MOST_OHM, "", "leakage of the board"),
         least_farad=LEAST_FARAD,
     )

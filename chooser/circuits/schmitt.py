@@ -50,11 +50,13 @@ def schmitt(
     scale = 1.0
     if factor is not None:
         scale, error = factor / usual, accuracy or MEASURED
-    typical = _train(gate, supply, (points.upper, points.lower), scale)
+    usual_points = (points.upper, points.lower)
+    typical = _train(gate, supply, usual_points, scale)
     current = gate.input_current_limit
     corners = tuple(
-        _train(gate, supply, (points.upper, points.lower), scale, lost)
+        _train(replace(gate, output_resistance_typical=ohm), supply, usual_points, scale, lost)
         for lost in (0.0, current, -current)
+        for ohm in (0.0, gate.output_resistance_limit)
     )
     first = rising(supply, 1.0, 0.0, points.upper, series=gate.output_resistance_typical)
     return Circuit(

@@ -165,17 +165,27 @@ class SteeredLaw:
         timer = self.timer
         source = 1.0 - ra * timer.switch_leak / timer.supply
         if self.diode.slope == 0.0:
-            return swing_time(
-                ra,
-                c,
-                g,
-                source=source - self.diode.drop / timer.supply,
-                start=timer.lower,
-                stop=timer.upper,
-                loss=timer.input_current / timer.supply,
-            )
+            return self._with_constant_drop((ra, rb), c, g, source)
         shunt = np.zeros_like(rb) if self.both else 1.0 / rb
         return self._through_diode(ra, shunt, c, g, (source, timer.lower, timer.upper))
+
+    def _with_constant_drop(
+        self, rs: tuple[Array, Array], c: Array, g: Array, source: Array
+    ) -> Array:
+        """Return the high time of a diode that conducts while RB alone would drop more than it.
+
+        That is below V' - Vd (RA + RB) / RB; above it the capacitor charges through both.
+        """
+        timer, (ra, rb) = self.timer, rs
+        drop, loss = self.diode.drop / timer.supply, timer.input_current / timer.supply
+        turn = np.full(np.shape(source), timer.upper)
+        if not self.both:
+            turn = np.clip(source - drop * (ra + rb) / rb, timer.lower, timer.upper)
+        through = swing_time(
+            ra, c, g, source=source - drop, start=timer.lower, stop=turn, loss=loss
+        )
+        past = swing_time(ra + rb, c, g, source=source, start=turn, stop=timer.upper, loss=loss)
+        return np.asarray(through + past)
 
     def _low(self, ra: Array, rb: Array, c: Array, g: Array) -> Array:
         timer = self.timer

@@ -132,4 +132,6 @@ def _at_supply(family: Family, options: dict[str, Any]) -> Callable[[float], Cir
 
 for _family in FAMILIES:
     _text = f"Check {_family.summary}.\n\n\b\nExample: chooser check {_family.check}"
-    app.command(_family.name)(composed(partial(_run, _family), _parameters(_family), _text))
+    app.command(_family.name, short_help=_family.summary)(
+        composed(partial(_run, _family), _parameters(_family), _text)
+    )

@@ -29,7 +29,8 @@ RankBy = Annotated[
         help="error: smallest error first, exact over the whole space. count: fewest parts first, "
         "exact. balanced: inside the band first, then the likely miss, where each extra part must "
         f"cut it by a tenth; it weighs the {NEAREST} nearest resistor networks for every capacitor "
-        "network and every number of resistors.",
+        "network and every number of resistors; of two slots so many RB, and beside each so many "
+        "RA.",
     ),
 ]
 Top = Annotated[
@@ -125,4 +126,6 @@ def _run(family: Family, options: dict[str, Any]) -> None:
 
 for _family in FAMILIES:
     _text = f"Fit {_family.summary}.\n\n\b\nExample: chooser fit {_family.fit}"
-    app.command(_family.name)(composed(partial(_run, _family), _parameters(_family), _text))
+    app.command(_family.name, short_help=_family.summary)(
+        composed(partial(_run, _family), _parameters(_family), _text)
+    )

@@ -85,9 +85,13 @@ def _limit_of(not_listed: Collection[int], request: Request) -> str:
     """Say what the search did not cover."""
     said = []
     if request.rank is Rank.BALANCED:
-        said.append(
-            f"only the {NEAREST} nearest resistor networks to each capacitor network were weighed"
-        )
+        near = f"the {NEAREST} nearest resistor networks to each capacitor network"
+        if len(request.circuit.resistors) == 2:  # noqa: PLR2004 - RA and RB
+            near = (
+                f"the {NEAREST} nearest RB to each capacitor network and {NEAREST} RA beside each"
+            )
+        if request.circuit.resistors:
+            said.append(f"only {near} were weighed")
     if not_listed:
         sizes = " and ".join(str(size) for size in sorted(not_listed))
         said.append(f"networks of {sizes} capacitors, too many to list, were not covered")

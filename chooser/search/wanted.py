@@ -59,7 +59,8 @@ def _pair(request: Request, farad: Floats, leak: Floats) -> tuple[Floats, Floats
     rb = law.rb_for(low, np.full(farad.shape, FAR_OHM), farad, leak)
     ra = np.full(farad.shape, np.inf)
     ceiling = np.minimum(most, FAR_OHM)
-    reached = np.flatnonzero((rb <= most) & (law.times((ceiling, rb), farad, leak)[0] >= high))
+    longest = law.times((ceiling, np.minimum(rb, ceiling)), farad, leak)[0]
+    reached = np.flatnonzero((rb <= most) & (longest >= high))
     farad, leak = farad[reached], leak[reached]
     for _ in range(_ROUNDS):
         # What cannot be is cut off at a milliohm, so that the rest can still be worked out.
