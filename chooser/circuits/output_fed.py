@@ -133,7 +133,7 @@ def _refuse(timer: Timer, supply: float, load: float, high: float) -> None:
     way = "take a CMOS timer or a higher supply" if not load else "lighten the load"
     raise BadRequestError(
         f"The output of the {timer.name} timer at {format_voltage(supply)} only rises to "
-        f"{format_voltage(high * supply, digits=3)}{loaded}, below the trip point of "
+        f"{format_voltage(max(high, 0.0) * supply, digits=3)}{loaded}, below the trip point of "
         f"{format_voltage(timer.threshold * supply, digits=3)}: this circuit would stall; {way}, "
         "or build it as `astable`."
     )

@@ -26,10 +26,13 @@ def shortage(request: Request, search: Search) -> tuple[str, ...]:
     -------
     One sentence, or none where not even one board can be built inside the band.
     """
+    # The order of errors answers fastest whether anything lies in the band at all; but a little
+    # outside a range may be nearer, by error, than what lies inside, and is not accepted.
+    ranges = any(target.is_range for target in request.targets)
+    rank = Rank.BALANCED if ranges else Rank.ERROR
 
     def can_make(boards: int) -> bool:
-        # The order of errors answers fastest whether anything lies in the band at all.
-        fit = search(replace(request, boards=boards, rank=Rank.ERROR, top=1))
+        fit = search(replace(request, boards=boards, rank=rank, top=1))
         return fit is not None and fit.in_band
 
     if not can_make(1):

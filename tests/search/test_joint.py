@@ -11,6 +11,7 @@ import joint_oracle
 import numpy as np
 import oracle
 import pytest
+from pair_stocks import WISHES, exactly, leaky_stock, random_targets, random_times
 from stocks import EVERY_RULE, capacitor, plain, random_stock, resistor, sides
 
 from chooser.circuits.astable import astable
@@ -23,48 +24,14 @@ from chooser.parts import Kind
 from chooser.search import space, windows
 from chooser.search.find import find_fits, search_choices
 from chooser.search.house_rules import usable_parts
-from chooser.search.joint import Inverse, box_of, errors_of, widest
-from chooser.search.request import Request, Target
-from chooser.search.space import Space, combinations
-from chooser.search.tables import every_network
+from chooser.search.request import Request
+from chooser.search.space import combinations
 from chooser.search.terms import Rank, Rule
 
 IDEAL = timer_named("ideal")
 PLAIN = astable(IDEAL, 9.0)
 STEERED = steered(IDEAL, 9.0, diode_named("ideal"))
 ORDERS = (Rank.ERROR, Rank.COUNT)
-WISHES = ("both times", "period and duty", "period and range", "period alone")
-ANY_DUTY = Target("duty", 1e-6, 1 - 1e-6)
-
-
-def exactly(output, value):
-    return Target(output, value, value)
-
-
-def rounded(value, digits=6):
-    return float(f"{value:.{digits}g}")
-
-
-def random_targets(rnd, wish, high, low):
-    """Targets near two times in second; of a duty, a value or a range around theirs."""
-    high, low = (rounded(time * rnd.choice((1, 1, rnd.uniform(0.8, 1.25)))) for time in (high, low))
-    if wish == "both times":
-        return (exactly("high", high), exactly("low", low))
-    period, duty = exactly("period", rounded(high + low)), rounded(high / (high + low))
-    if wish == "period alone":
-        return (period, ANY_DUTY)
-    if wish == "period and duty":
-        return (period, exactly("duty", duty))
-    width = rnd.uniform(0.01, 0.1)
-    ends = max(duty - width * rnd.random(), 0.01), min(duty + width, 0.99)
-    return (period, Target("duty", *map(rounded, ends)))
-
-
-def random_times(rnd, holdings):
-    """Times of single parts of the stock, so that hits and near misses are common."""
-    ohms, farads = ([value for value, _ in side.values()] for side in sides(holdings))
-    farad = rnd.choice(farads)
-    return tuple(rnd.choice(ohms) * farad * math.log(2) * rnd.choice((0.5, 1, 1, 2)) for _ in "HL")
 
 
 def random_request(rnd, circuit, holdings, wish, **options):
@@ -231,20 +198,6 @@ def real_circuit(rnd):
     return circuit, figures
 
 
-def leaky_stock(rnd, top=7.0):
-    """Three digits a value, capacitors that leak more or less, a few pieces each."""
-    holdings = [
-        resistor(number, rounded(10 ** rnd.uniform(2.5, top), 3), rnd.choice((1, 2, 3)))
-        for number in range(1, rnd.randint(2, 5))
-    ]
-    kinds = ("polyester", "c0g", "electrolytic", "electrolytic-non-polar", "tantalum")
-    for number in range(11, rnd.randint(12, 14)):
-        farad = rounded(10 ** rnd.uniform(-9.3, -4), 3)
-        kind = rnd.choice(kinds)
-        holdings.append(capacitor(number, farad, rnd.choice((1, 2)), technology=kind))
-    return holdings
-
-
 @dataclass
 class Rules:
     """What may be built: the device's limits from its record, the leakage rule from its words."""
@@ -330,8 +283,8 @@ def run_real(monkeypatch, rnd, trials):
 
 @pytest.mark.parametrize("seed", range(3))
 def test_real_timers_against_every_circuit(monkeypatch, seed):
-    same, total = run_real(monkeypatch, random.Random(f"real {seed}"), 20)
-    assert total > 20
+    same, total = run_real(monkeypatch, random.Random(f"real {seed}"), 10)
+    assert total > 10
     assert same > 0.9 * total  # but for the rare pair that only rounding tells apart
 
 
@@ -352,98 +305,3 @@ def test_a_time_that_never_ends_is_no_answer():
         fits = find_fits(holdings, Request(circuit, targets, rank=rank, lifted=EVERY_RULE)).fits
         assert all(math.isfinite(fit.outlook.of("high").nominal) for fit in fits)
         assert all(math.isfinite(fit.error) for fit in fits)
-
-
-# Windows -----------------------------------------------------------------------------------------
-
-
-def crossed(spaced, slots):
-    """Values of every pair of networks of one or two resistors, each on every capacitor network."""
-    tables = (rows for size in (1, 2) for rows in every_network(spaced.resistor_tables, size))
-    values = np.concatenate([rows.value for rows in tables])
-    axes = values, values, np.arange(len(slots))
-    return [each.ravel() for each in np.meshgrid(*axes, indexing="ij")]
-
-
-def missed(circuit, holdings, targets, errors):
-    """Count circuits within each of falling errors, and those outside their own window."""
-    request = Request(circuit, targets, most_resistors=2, lifted=EVERY_RULE)
-    spaced = Space([h for h in holdings if h.id < 11], [h for h in holdings if h.id > 10], request)
-    inside = out = 0
-    for capacitors in (1, 2):
-        slots = spaced.slots(capacitors)
-        inverse = Inverse(circuit.twin, slots, widest(spaced, slots))
-        ra, rb, slot = crossed(spaced, slots)
-        times = circuit.twin.times((ra, rb), slots.farad[slot], slots.leak[slot])
-        made = errors_of(request, times)
-        for error in errors:
-            box = box_of(targets, error)
-            ends = inverse.windows(box, error)
-            near = made <= error
-            a, b, where = ra[near], rb[near], slot[near]
-            to_a, to_b = (tuple(end[where] for end in each) for each in (ends.ra, ends.rb))
-            checked = [(a, to_a), (b, to_b)]
-            checked.append((a, inverse.ra_beside(box, b, to_a, where).ra))
-            checked.append((b, inverse.rb_beside(box, a, to_b, where).rb))
-            held = [
-                (low * (1 - windows.ROUNDING) <= value) & (value <= high * (1 + windows.ROUNDING))
-                for value, (low, high) in checked
-            ]
-            inside += len(a)
-            out += len(a) - int(np.logical_and.reduce(held).sum())
-    return inside, out
-
-
-def random_twin(rnd):
-    timer = timer_named(rnd.choice(("ideal", "bipolar", "cmos", "NE555", "ICM7555")))
-    control = rnd.choice((None, 3.0, 6.5))
-    if rnd.random() < 0.4:
-        return astable(timer, 9.0, control)
-    diode = diode_named(rnd.choice(("silicon", "schottky", "0.6V", "ideal")))
-    both = rnd.random() < 0.5 and control != 3.0
-    return steered(timer, 9.0, diode, both=both, control=control)
-
-
-def sweep_windows(rnd, trials):
-    total = 0
-    for _ in range(trials):
-        circuit, holdings = random_twin(rnd), leaky_stock(rnd)
-        targets = random_targets(rnd, rnd.choice(WISHES), *random_times(rnd, holdings))
-        errors = sorted((10 ** rnd.uniform(-6, 1.5) for _ in range(3)), reverse=True)
-        inside, out = missed(circuit, holdings, targets, errors)
-        assert not out, (circuit.family, circuit.device, targets, errors)
-        total += inside
-    return total
-
-
-def test_windows_hold_every_circuit_within_their_error():
-    assert sweep_windows(random.Random("windows"), 25) > 500
-
-
-@pytest.mark.slow
-@pytest.mark.parametrize("seed", range(6))
-def test_windows_hold_every_circuit_of_many_stocks(seed):
-    sweep_windows(random.Random(f"windows {seed}"), 100)
-
-
-@pytest.mark.parametrize("wish", WISHES)
-def test_the_box_holds_exactly_the_times_within_an_error(wish):
-    """The box is no wider than the targets say: its corners in turn break some target."""
-    rnd = random.Random(f"box {wish}")
-    for _ in range(200):
-        high, low = 10 ** rnd.uniform(-3, 1), 10 ** rnd.uniform(-3, 1)
-        targets = random_targets(rnd, wish, high, low)
-        error = 10 ** rnd.uniform(-6, 1)
-        request = Request(STEERED, targets)
-        box = box_of(targets, error)
-        times = np.array([10 ** rnd.uniform(-4, 2) for _ in range(64)]) * high
-        others = np.array([10 ** rnd.uniform(-4, 2) for _ in range(64)]) * low
-        within = errors_of(request, (times, others)) <= error
-        assert (times[within] >= box.high[0] * (1 - 1e-12)).all()
-        assert (times[within] <= box.high[1] * (1 + 1e-12)).all()
-        assert (others[within] >= box.low[0] * (1 - 1e-12)).all()
-        assert (others[within] <= box.low[1] * (1 + 1e-12)).all()
-        if wish == "both times":
-            inside = (times >= box.high[0]) & (times <= box.high[1])
-            inside &= (others >= box.low[0]) & (others <= box.low[1])
-            assert (errors_of(request, (times, others))[inside] <= error * (1 + 1e-9)).all()

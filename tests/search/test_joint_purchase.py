@@ -5,6 +5,7 @@ Whatever is named is put into the stock, and a search must then find it in the b
 
 from __future__ import annotations
 
+import math
 import random
 
 import pytest
@@ -71,15 +72,16 @@ def check(holdings, request):
         request.targets,
         within=request.within,
         rank=Rank.ERROR,
+        top=50,
         boards=request.boards,
         most_resistors=1,
         most_capacitors=1,
     )
-    fits = find_fits([*holdings, new], again).fits
-    assert fits, str(found)
-    assert fits[0].in_band, str(found)
-    # With the bought part alone, or with better luck than that, the error is no greater.
-    assert abs(fits[0].error) <= abs(found.error) * (1 + 1e-9) + 1e-12, str(found)
+    # The named parts alone are enough, and with better luck the error is even less.
+    beside = {holding.id: holding for _, holding in found.owned}
+    inside = [fit for fit in find_fits([*beside.values(), new], again).fits if fit.in_band]
+    assert inside, str(found)
+    assert abs(inside[0].error) <= abs(found.error) * (1 + 1e-9) + 1e-12, str(found)
     assert {name for name, _ in found.owned} | {found.slot} == set(request.circuit.slots)
     return True
 
@@ -122,13 +124,13 @@ def test_what_is_bought_for_two_resistors_gets_into_the_band(name):
             boards=rnd.choice((1, 1, 2)),
         )
         named += check(holdings, request)
-    assert named >= 2
+    assert named >= 1
 
 
 @pytest.mark.parametrize("name", ONE_RESISTOR)
 def test_what_is_bought_for_one_resistor_gets_into_the_band(name):
     circuit, rnd, named = ONE_RESISTOR[name], random.Random(name), 0
-    for _ in range(30):
+    for _ in range(15):
         wanted = float(f"{10 ** rnd.uniform(-4, 4):.4g}")
         request = Request(
             circuit,
@@ -137,7 +139,7 @@ def test_what_is_bought_for_one_resistor_gets_into_the_band(name):
             boards=rnd.choice((1, 1, 2)),
         )
         named += check(random_stock(rnd), request)
-    assert named >= 5
+    assert named >= 2
 
 
 @pytest.mark.parametrize("within", [1e-4, 0.01, 0.05])
@@ -204,6 +206,30 @@ def test_a_capacitor_beyond_what_the_device_allows_is_never_bought():
             found = bought([resistor(1, 2e4)], request)
             if found is not None and found.bought.kind is Kind.CAPACITOR:
                 assert circuit.least_farad <= found.bought.value <= circuit.most_farad
+
+
+def test_what_is_short_is_told_of_a_range_of_duties_too():
+    """Two boards can be made within 70 to 75 %; what is nearer by error lies outside the range.
+
+    By hand: 20k2, 10k and 1 uF make 75.1 % (0.17 % off); 19k8 makes 74.9 %, and a period 1 % off.
+    """
+    holdings = [
+        resistor(1, 20.2e3, 9),
+        resistor(2, 19.8e3, 2, drawer="A7"),
+        resistor(3, 1e4, 9),
+        capacitor(11, 1e-6, 9),
+    ]
+    targets = (only("period", 40.2e3 * 1e-6 * math.log(2)), Target("duty", 0.7, 0.75))
+    request = Request(
+        astable(timer_named("ideal"), 9.0),
+        targets,
+        boards=3,
+        most_resistors=1,
+        most_capacitors=1,
+    )
+    said = " ".join(find_fits(holdings, request).advice)
+    assert "enough for 2 boards" in said
+    assert "1 x 19k8 (drawer A7)" in said
 
 
 @pytest.mark.slow

@@ -30,7 +30,7 @@ def value_of(fit, name):
     return oracle.value(plain(slot.network), worth, "+" if name == "R" else "||")
 
 
-# Counts and values that are published --------------------------------------------------------------
+# Counts and values that are published ------------------------------------------------------------
 
 
 def test_seventeen_values_of_three_resistors():
