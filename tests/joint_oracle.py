@@ -163,6 +163,13 @@ def miss(times: tuple[Fraction | float, Fraction | float], wanted: Wanted) -> Fr
     return worst
 
 
+def kept(rows: list[Row], times: Callable[[Row], tuple], wanted: Wanted) -> list[Row]:
+    """Return the rows inside every range that was asked for; all of them where none is."""
+    ranges = [(output, *ends) for output, *ends in wanted if ends[0] < ends[1]]
+    found = [row for row in rows if not ranges or miss(times(row), ranges) <= 1e-12]
+    return found or rows
+
+
 def shortlist(rows: list[Row], rough: Callable[[Row], float], rank: str, top: int) -> list[Row]:
     """Return the rows that may be among the first `top`: fractions for the rest would be waste.
 

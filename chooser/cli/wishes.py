@@ -14,7 +14,7 @@ if TYPE_CHECKING:
 Options = Mapping[str, Any]
 
 BELOW_HALF = (
-    "for less, steer the charging with a diode (`fit steered`), or hang the load between output "
+    "steer the charging with a diode (`fit steered`), or hang the load between output "
     "and supply, so that it is on in the low time (--on, --off, --active low)"
 )
 
@@ -190,9 +190,9 @@ def _check_possible(targets: tuple[Target, ...], circuit: Circuit) -> None:
     if abs(most - 0.5) < 1e-3:  # noqa: PLR2004 - a half, as people round it
         raise BadRequestError(
             "A duty of 50% would need RA = 0, which shorts the supply through the discharge pin; "
-            f"take the output-fed circuit (`fit output-fed`), or `fit steered`: {BELOW_HALF}."
+            f"take the output-fed circuit (`fit output-fed`), or {BELOW_HALF}."
         )
     raise BadRequestError(
         "A plain astable is high for more than half of its period, and "
-        f"{format_percent(most, digits=3)} was asked: {BELOW_HALF}."
+        f"{format_percent(most, digits=3)} was asked; {BELOW_HALF}."
     )

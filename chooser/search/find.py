@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Collection, Iterable, Sequence
+from dataclasses import replace
 from operator import attrgetter
 from time import perf_counter
 
@@ -110,6 +111,13 @@ def search_choices(usable: Usable, request: Request) -> tuple[list[Choice], froz
     The choices that get a place, best first, and the numbers of capacitors whose networks were
     too many to list.
     """
+    found, not_listed = _searched(usable, request)
+    if not found and request.ranges_hold and any(target.is_range for target in request.targets):
+        return _searched(usable, replace(request, ranges_hold=False))
+    return found, not_listed
+
+
+def _searched(usable: Usable, request: Request) -> tuple[list[Choice], frozenset[int]]:
     space = Space(usable.resistors, usable.capacitors, request)
     circuit = request.circuit
     if (circuit.resistors and not space.resistors.lots) or (

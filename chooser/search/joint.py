@@ -20,7 +20,7 @@ from numpy.typing import NDArray
 
 from chooser.circuits.circuit import outputs_of
 from chooser.circuits.laws import TwinLaw, solved
-from chooser.search.pairs import Pairs
+from chooser.search.pairs import SAME, Pairs
 from chooser.search.pools import Floats, Ints
 from chooser.search.request import Request, Target
 from chooser.search.slots import CapacitorSlots
@@ -49,11 +49,12 @@ class Box:
     duty: tuple[float, float] = (0.0, 1.0)
 
 
-def box_of(targets: tuple[Target, ...], error: float) -> Box:
-    """Return what the targets leave open within an error."""
+def box_of(targets: tuple[Target, ...], error: float, *, ranges_hold: bool = False) -> Box:
+    """Return what the targets leave open within an error; ranges that hold are not widened."""
     box = Box()
     for target in targets:
-        ends = max(target.low * (1 - error), 0.0), target.high * (1 + error)
+        slack = MARGIN if ranges_hold and target.is_range else error
+        ends = max(target.low * (1 - slack), 0.0), target.high * (1 + slack)
         if target.output == "duty":
             ends = ends[0], min(ends[1], 1.0)
         box = replace(box, **{target.output: ends})
@@ -75,7 +76,10 @@ def errors_of(request: Request, times: tuple[Floats, ...]) -> Floats:
         value = made[target.output]
         below, above = 1 - value / target.low, value / target.high - 1
         worst = np.maximum(worst, np.maximum(below, above))
-    return np.asarray(np.where(np.isfinite(sum(times)), worst, inf))
+    fine = np.isfinite(sum(times))
+    if request.ranges_hold:
+        fine &= in_ranges(request, times)
+    return np.asarray(np.where(fine, worst, inf))
 
 
 def in_ranges(request: Request, times: tuple[Floats, ...]) -> NDArray[np.bool_]:
@@ -86,7 +90,8 @@ def in_ranges(request: Request, times: tuple[Floats, ...]) -> NDArray[np.bool_]:
     for target in request.targets:
         if target.is_range:
             value = made[target.output]
-            inside &= (value >= target.low) & (value <= target.high)
+            inside &= value >= target.low * (1 - SAME)
+            inside &= value <= target.high * (1 + SAME)
     return inside
 
 
@@ -273,7 +278,8 @@ class TwoResistors:
 
     def _within(self, error: float) -> Pairs:
         """Return the best pairs of those with an error of at most `error`."""
-        box = box_of(self._request.targets, error)
+        request = self._request
+        box = box_of(request.targets, error, ranges_hold=request.ranges_hold)
         windows = self._inverse.windows(box, error).within(self._reach)
         slot = windows.open
         windows = windows.only(slot)

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections import Counter
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from itertools import product
 
 import numpy as np
@@ -91,6 +91,18 @@ def one_purchase(
     The purchase with the smallest error, from E24, else from E96 for resistors; E6 for
     capacitors. None where no single part helps.
     """
+    for variant in request.circuit.variants:
+        circuit = replace(request.circuit, variants=(variant,))
+        found = _one_for(resistors, capacitors, replace(request, circuit=circuit))
+        if found is not None:
+            return found
+    return None
+
+
+def _one_for(
+    resistors: Sequence[Holding], capacitors: Sequence[Holding], request: Request
+) -> Purchase | None:
+    """Find the purchase for a circuit whose output is decided."""
     circuit = request.circuit
     stock = {
         name: _several(capacitors if name == "C" else resistors, request.boards)
@@ -214,7 +226,9 @@ def _worst(values: dict[str, float], leak: float, request: Request) -> tuple[str
     outputs = outputs_of(circuit, [scale * float(time) for time in times])
     errors = {target: target.error(float(outputs[target.output])) for target in request.targets}
     target = max(errors, key=lambda each: abs(errors[each]))
-    return _output_text(target.output, float(outputs[target.output])), errors[target]
+    made = _output_text(target.output, float(outputs[target.output]))
+    pin = circuit.variants[0].name
+    return f"{made}{f' at output {pin}' if pin else ''}", errors[target]
 
 
 def _output_text(output: str, value: float) -> str:

@@ -76,6 +76,8 @@ class Request:
     boards : boards to be built alike; all share the free counts.
     most_resistors, most_capacitors : parts a slot may have.
     lifted : the house rules that do not apply.
+    ranges_hold : whether a circuit outside a wanted range is no answer at all; the search lifts
+        it where no circuit is inside, to show the nearest.
     """
 
     circuit: Circuit
@@ -87,6 +89,7 @@ class Request:
     most_resistors: int = 3
     most_capacitors: int = 2
     lifted: frozenset[Rule] = frozenset()
+    ranges_hold: bool = True
 
     @property
     def target(self) -> float:

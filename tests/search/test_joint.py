@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 import random
 from dataclasses import dataclass
+from functools import partial
 from itertools import product
 
 import joint_oracle
@@ -78,7 +79,8 @@ def listed(holdings, request, *, is_steered):
     def size(row):
         return joint_oracle.miss(joint_oracle.textbook(row, steered=is_steered), wanted)
 
-    near = joint_oracle.shortlist(rows, rough, request.rank, request.top)
+    kept = joint_oracle.kept(rows, partial(joint_oracle.textbook, steered=is_steered), wanted)
+    near = joint_oracle.shortlist(kept, rough, request.rank, request.top)
     uses = joint_oracle.all_uses(ohms, farads, request.boards)
     return rows, joint_oracle.ranked(near, size, uses, request.rank)[: request.top]
 
@@ -239,14 +241,15 @@ def real_rows(holdings, request, figures):
     }
     most = request.most_resistors, request.most_capacitors
     rules, wanted = Rules(request.circuit, figures, strict), wanted_of(request)
-    errors = {}
+    found = {}
     rows = joint_oracle.circuits(ohms, farads, most, request.boards, polar)
     for row in rows:
         leak = float(joint_oracle.value_of(row.c, leaks, "||"))
         times = figures.times(row, leak)
         if row.farad >= oracle.fraction(1e-9) and rules.allow(row, leak, times):
-            errors[row] = joint_oracle.miss(times, wanted)
-    return rows, errors
+            found[row] = times
+    kept = joint_oracle.kept(list(found), found.__getitem__, wanted)
+    return rows, {row: joint_oracle.miss(found[row], wanted) for row in kept}
 
 
 def compare_real(holdings, request, figures):
