@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Collection, Sequence
+from dataclasses import replace
 
 import numpy as np
 
@@ -69,8 +70,10 @@ def advice_for(
 
 def _no_purchase(request: Request) -> str:
     ways = ["accept a wider band (--within)"]
-    if request.most_resistors < USUAL_PARTS:
+    if request.circuit.resistors and request.most_resistors < USUAL_PARTS:
         ways.append("allow more parts (--most-resistors)")
+    if not request.circuit.resistors and request.most_capacitors < USUAL_PARTS:
+        ways.append("allow more parts (--most-capacitors)")
     if request.boards > 1:
         ways.append("build fewer boards")
     return (
@@ -118,13 +121,16 @@ def _out_of_reach(usable: Usable, request: Request) -> tuple[str, ...]:
         return ()
     farad = np.array([part.effective for part in parts])
     leak = np.array([leak_of(part, request) for part in parts])
-    rs = wanted_resistances(request, farad, leak)
     least, most = charging_bounds(leak, request)
-    if np.all(charging_of(circuit, rs) > most):
+    too_long, too_short = [], []
+    for variant in circuit.variants:
+        alone = replace(request, circuit=replace(circuit, variants=(variant,)))
+        rs = wanted_resistances(alone, farad, leak)
+        too_long.append(bool(np.all(charging_of(circuit, rs) > most)))
+        too_short.append(bool(np.all(np.min(rs, axis=0) < least)))
+    if all(too_long):
         return (_too_long(usable, request),)
-    if np.all(np.min(rs, axis=0) < least):
-        return (_too_short(usable, request),)
-    return ()
+    return (_too_short(usable, request),) if all(too_short) else ()
 
 
 def _too_short(usable: Usable, request: Request) -> str:
@@ -150,8 +156,11 @@ def _too_long(usable: Usable, request: Request) -> str:
     timer = request.circuit.timer
     if timer is not None and timer.threshold_current_limit > SMALL_CURRENT:
         ways.append("a CMOS timer")
+    further = FURTHER
+    if request.circuit.family == "counter":
+        further = "let a second counter divide what this one gives"
     return (
         "Every capacitor here would need a resistor beyond what the device and the leakage allow: "
         "such a time drifts or never ends. Ways out: "
-        f"{', '.join([*ways, 'or to ' + FURTHER])}."
+        f"{', '.join([*ways, 'or to ' + further])}."
     )

@@ -53,18 +53,19 @@ def find_fits(holdings: Iterable[Holding], request: Request) -> Answer:
         combinations=combinations(usable.resistors, usable.capacitors, request, not_listed),
         complete=not limit,
         limit=limit,
-        seconds=perf_counter() - start,
+        seconds=0.0,
     )
     advice = advice_for(stock, usable, fits, request)
     if advice and request.boards > 1:
         advice = (*shortage(request, lambda fewer: _first_fit(stock, fewer)), *advice)
+    ways_out = way_out(fits, request, lambda other: _first_fit(stock, other))
     return Answer(
         request=request,
         fits=explained(fits, request.rank),
-        searched=searched,
+        searched=replace(searched, seconds=perf_counter() - start),
         refusals=usable.refusals,
         advice=advice,
-        ways_out=way_out(fits, request, lambda other: _first_fit(stock, other)),
+        ways_out=ways_out,
     )
 
 
@@ -87,6 +88,8 @@ def _limit_of(not_listed: Collection[int], request: Request) -> str:
     said = []
     if request.rank is Rank.BALANCED:
         near = f"the {NEAREST} nearest resistor networks to each capacitor network"
+        if not request.circuit.capacitor:
+            near = f"the {NEAREST} nearest networks of every number of resistors"
         if len(request.circuit.resistors) == 2:  # noqa: PLR2004 - RA and RB
             near = (
                 f"the {NEAREST} nearest RB to each capacitor network and {NEAREST} RA beside each"

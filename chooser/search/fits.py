@@ -48,7 +48,7 @@ def fit_of(choice: Choice, holdings: Mapping[int, Holding], request: Request) ->
         outlook=out,
         errors=errors,
         error=errors[chief.output],
-        spread=out.of(chief.output).spread,
+        spread=out.chief.spread,
         likely_miss=max(
             float(likely_miss(target.error(reading.mean), reading.spread))
             for target in request.targets
@@ -104,7 +104,9 @@ def _balanced_reason(fit: Fit, after: Fit) -> str:
     if fit.in_band != after.in_band:
         return "inside the accepted band"
     parts, parts_after = fit.parts, after.parts
-    miss, miss_after = (format_percent(each.likely_miss, digits=3) for each in (fit, after))
+    miss, miss_after = _apart(fit.likely_miss, after.likely_miss)
+    if parts == parts_after and miss == miss_after:
+        return "an equal likely miss with as many parts; another capacitor comes next"
     if parts == parts_after:
         return f"likely miss {miss} against {miss_after} with as many parts"
     if parts < parts_after:
@@ -113,3 +115,12 @@ def _balanced_reason(fit: Fit, after: Fit) -> str:
             f"{format_percent(PER_PART - 1, digits=2)} for each more"
         )
     return f"likely miss {miss} with {parts} parts against {miss_after} with {parts_after}"
+
+
+def _apart(one: float, other: float) -> tuple[str, str]:
+    """Write two fractions with as many digits as it takes to tell them apart, or six."""
+    for digits in range(3, 7):
+        texts = format_percent(one, digits=digits), format_percent(other, digits=digits)
+        if texts[0] != texts[1]:
+            break
+    return texts

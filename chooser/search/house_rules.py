@@ -78,6 +78,8 @@ def usable_parts(holdings: Iterable[Holding], request: Request) -> Usable:
     resistors = [holding for holding in stock if holding.part.kind is Kind.RESISTOR]
     capacitors = [holding for holding in stock if holding.part.kind is Kind.CAPACITOR]
     refusals: list[Refusal] = []
+    if not request.circuit.capacitor:
+        return Usable(tuple(resistors), (), ())
     if Rule.CERAMIC not in request.lifted:
         out = [holding for holding in capacitors if _is_class_2(holding)]
         capacitors = _without(capacitors, out, Rule.CERAMIC, "of ceramic", refusals)
@@ -86,7 +88,7 @@ def usable_parts(holdings: Iterable[Holding], request: Request) -> Usable:
         out = [holding for holding in capacitors if _is_rated_below(holding, supply)]
         what = f"rated below {format_voltage(supply)}"
         capacitors = _without(capacitors, out, Rule.VOLTAGE, what, refusals)
-    if request.circuit.alternating:
+    if request.circuit.alternating and Rule.POLARISED_SWING not in request.lifted:
         out = [holding for holding in capacitors if is_polarised(holding.part)]
         capacitors = _without(capacitors, out, Rule.POLARISED_SWING, "of polarised kind", refusals)
     refusals += _network_refusals(capacitors, request)
@@ -124,13 +126,15 @@ def _resistor_refusals(request: Request) -> Iterator[Refusal]:
             f"No timing resistance suits the {request.circuit.device}: its {bounds.least_why} asks "
             f"for {least} or more, its {bounds.most_why} for {most} or less.",
         )
-    elif bounds.least > 0 and bounds.most < float("inf"):
-        less = ", less where the capacitor leaks" if request.circuit.capacitor else ""
-        yield Refusal(
-            Rule.RESISTOR_LIMITS,
-            f"Timing resistances stay between {least} ({bounds.least_why}) and {most} "
-            f"({bounds.most_why}){less}.",
-        )
+        return
+    ends = []
+    if bounds.least > 0:
+        ends.append(f"at or above {least} ({bounds.least_why})")
+    if bounds.most < float("inf"):
+        ends.append(f"at or below {most} ({bounds.most_why}), less where the capacitor leaks")
+    if ends:
+        why = f"Timing resistances stay {' and '.join(ends)}."
+        yield Refusal(Rule.RESISTOR_LIMITS, why)
 
 
 def resistor_bounds(request: Request) -> Bounds:

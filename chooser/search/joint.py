@@ -172,23 +172,97 @@ class Inverse:
     def _narrowed(self, box: Box, ends: Windows, slot: Ints) -> Windows:
         (a0, a1), (b0, b1) = ends.ra, ends.rb
         c, g = self._parts(slot)
-        low, high = box.low, box.high
-        if low[1] < inf:
-            b1 = np.minimum(b1, self._law.rb_for(low[1], np.maximum(a1, a0), c, g) * (1 + MARGIN))
-        if low[0] > 0:
-            b0 = np.maximum(b0, self._law.rb_for(low[0], a0, c, g) * (1 - MARGIN))
-        if high[1] < inf:
-            most = self._law.ra_for(high[1], np.minimum(b0, b1), c, g)
-            a1 = np.minimum(a1, most + MARGIN * np.abs(most) + MARGIN * b0)
-        if high[0] > 0:
-            least = self._law.ra_for(high[0], np.maximum(b1, b0), c, g)
-            a0 = np.maximum(a0, least - MARGIN * np.abs(least) - MARGIN * b1)
+        high, low = self._times_left(box, ends, slot)
+        b1 = np.minimum(b1, self._rb_for(low[1], np.maximum(a1, a0), c, g) * (1 + MARGIN))
+        b0 = np.maximum(b0, self._rb_for(low[0], a0, c, g) * (1 - MARGIN))
+        most = self._ra_for(high[1], np.minimum(b0, b1), c, g)
+        a1 = np.minimum(a1, most + MARGIN * np.abs(most) + MARGIN * b0)
+        least = self._ra_for(high[0], np.maximum(b1, b0), c, g)
+        a0 = np.maximum(a0, least - MARGIN * np.abs(least) - MARGIN * b1)
+        if self._law.through_both:
+            whole = self._slots.most[slot] * (1 + MARGIN)
+            a1, b1 = np.minimum(a1, whole - b0), np.minimum(b1, whole - a0)
         return Windows((a0, a1), (b0, b1))
+
+    def _times_left(
+        self, box: Box, ends: Windows, slot: Ints
+    ) -> tuple[tuple[Floats, Floats], tuple[Floats, Floats]]:
+        """Return the ends of the high and low times that a box and the windows leave together."""
+        full = np.ones(len(slot))
+        high, low = ((full * least, full * most) for least, most in (box.high, box.low))
+        if box.period == (0.0, inf):
+            return high, low
+        least, most = self._extremes(ends, slot)
+        p0, p1 = box.period
+        with np.errstate(invalid="ignore"):
+            return (
+                np.fmax(high[0], (p0 - most[1]) * (1 - MARGIN)),
+                np.fmin(high[1], (p1 - least[1]) * (1 + MARGIN)),
+            ), (
+                np.fmax(low[0], (p0 - most[0]) * (1 - MARGIN)),
+                np.fmin(low[1], (p1 - least[0]) * (1 + MARGIN)),
+            )
+
+    def _extremes(
+        self, ends: Windows, slot: Ints
+    ) -> tuple[tuple[Floats, Floats], tuple[Floats, Floats]]:
+        """Return the least and the most that the high and the low time can be in the windows."""
+        (a0, a1), (b0, b1) = ends.ra, ends.rb
+        c, g = self._parts(slot)
+        high0, low1 = self._law.times((a0, b0), c, g)[0], self._law.times((a0, b1), c, g)[1]
+        high1, low0 = self._law.times((a1, b1), c, g)[0], self._law.times((a1, b0), c, g)[1]
+        if self._law.through_both:
+            # All that both may come to, RA taking as much of it as it could.
+            bounded = np.isfinite(self._slots.most[slot])
+            rest = np.where(bounded, np.maximum(self._slots.most[slot] - b0, a0), a1)
+            whole = self._law.times((rest, b0), c, g)[0]
+            high1 = np.where(bounded, np.minimum(high1, whole), high1)
+        return (high0, low0), (high1, low1)
+
+    def _rb_for(self, low: Floats, ra: Floats, c: Floats, g: Floats) -> Floats:
+        """Return the RB for each low time; nothing for none, no end for an endless one."""
+        known = np.isfinite(low) & (low > 0)
+        found = np.where(low > 0, inf, 0.0)
+        if known.any():
+            found[known] = self._law.rb_for(low[known], ra[known], c[known], g[known])
+        return found
+
+    def _ra_for(self, high: Floats, rb: Floats, c: Floats, g: Floats) -> Floats:
+        """Return the RA for each high time; less than nothing for none, no end for endless."""
+        known = np.isfinite(high) & (high > 0)
+        found = np.where(high > 0, inf, -rb)
+        if known.any():
+            found[known] = self._law.ra_for(high[known], rb[known], c[known], g[known])
+        return found
+
+    def least_errors(self, targets: tuple[Target, ...], reach: Windows) -> Floats:
+        """Return, for each capacitor network, an error that no circuit in reach can be below."""
+        slot = reach.open
+        found = np.full(len(self._slots), inf)
+        if not len(slot):
+            return found
+        least, most = self._extremes(reach.only(slot), slot)
+        ends = {
+            "high": (least[0], most[0]),
+            "low": (least[1], most[1]),
+            "period": (least[0] + least[1], most[0] + most[1]),
+        }
+        need = np.zeros(len(slot))
+        for target in targets:
+            if target.output in ends:
+                shortest, longest = ends[target.output]
+                with np.errstate(over="ignore"):
+                    need = np.maximum(need, 1 - longest / target.low)
+                    need = np.maximum(need, shortest / target.high - 1)
+        found[slot] = need * (1 - MARGIN)
+        return found
 
     def ra_beside(self, box: Box, rb: Floats, ra: tuple[Floats, Floats], slot: Ints) -> Windows:
         """Return the RA that completes each RB, within its window."""
         c, g = self._parts(slot)
         a0, a1 = ra
+        if self._law.through_both:
+            a1 = np.minimum(a1, self._slots.most[slot] * (1 + MARGIN) - rb)
         for _ in range(_ROUNDS if box.period[1] < inf else 1):
             low0 = self._law.times((np.maximum(a1, a0), rb), c, g)[1]
             low1 = self._law.times((a0, rb), c, g)[1]
@@ -223,11 +297,28 @@ class Inverse:
             b1 = np.minimum(b1, solved(period, box.period[1], guess) * (1 + MARGIN))
             if box.period[0] > 0:
                 b0 = np.maximum(b0, solved(period, box.period[0], guess) * (1 - MARGIN))
+        if self._law.through_both:
+            b1 = np.minimum(b1, self._slots.most[slot] * (1 + MARGIN) - ra)
+            b1 = np.minimum(b1, self._rb_for_high(box.high[1], ra, c, g) * (1 + MARGIN))
+            b0 = np.maximum(b0, self._rb_for_high(box.high[0], ra, c, g) * (1 - MARGIN))
         if box.low[1] < inf:
             b1 = np.minimum(b1, self._law.rb_for(box.low[1], ra, c, g) * (1 + MARGIN))
         if box.low[0] > 0:
             b0 = np.maximum(b0, self._law.rb_for(box.low[0], ra, c, g) * (1 - MARGIN))
         return Windows((ra, ra), (b0, b1))
+
+    def _rb_for_high(self, high: float, ra: Floats, c: Floats, g: Floats) -> Floats:
+        """Return the RB that makes a high time beside each RA; 0 where RA is too much already."""
+        if not 0.0 < high < inf:
+            return np.full(len(ra), inf if high > 0 else 0.0)
+        # Either resistor does nearly the same for the high time.
+        guess = self._law.ra_for(high, ra, c, g)
+
+        def time(rb: Floats) -> Floats:
+            return self._law.times((ra, rb), c, g)[0]
+
+        found = solved(time, high, np.where(guess > 0, guess, 1.0))
+        return np.asarray(np.where(time(np.zeros(len(ra))) < high, found, 0.0))
 
     def _parts(self, slot: Ints) -> tuple[Floats, Floats]:
         return self._slots.farad[slot], self._slots.leak[slot]
@@ -260,8 +351,10 @@ class TwoResistors:
     def _steps(self, bound: float) -> Iterator[float]:
         """Yield rising errors to try; the last one is the bound.
 
-        The first would do if the networks were spread evenly over the octaves.
+        The first is what the nearest circuit in reach needs, and a little more: as much as would
+        do if the networks were spread evenly over the octaves.
         """
+        need = float(np.min(self._inverse.least_errors(self._request.targets, self._reach)))
         value = self._tables.singles.value
         octaves = log(float(value[-1] / value[0])) + 1
         size_a, size_b = self._sizes
@@ -271,10 +364,11 @@ class TwoResistors:
         error = sqrt(area) / 2
         if free:
             error = min(error, area / log((1 - free[0].low) / (1 - free[0].high)) / 2)
-        while error < min(bound, _FARTHEST):
-            yield error
+        while need + error < min(bound, _FARTHEST):
+            yield need + error
             error *= WIDER
-        yield bound
+        if need <= bound:
+            yield bound
 
     def _within(self, error: float) -> Pairs:
         """Return the best pairs of those with an error of at most `error`."""

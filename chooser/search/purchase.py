@@ -20,11 +20,11 @@ from chooser.quantities import (
     format_resistance,
 )
 from chooser.search.joint import errors_of, in_ranges
-from chooser.search.pools import Floats
+from chooser.search.pools import Floats, Ints
 from chooser.search.request import Request
 from chooser.search.slots import charging_bounds
 from chooser.search.terms import Rule
-from chooser.search.wanted import charging_of
+from chooser.search.wanted import FAR_OHM, LEAST_OHM, aim_of, charging_of
 
 BIGGEST_FILM = 4.7e-6
 """Farad up to which film capacitors are commonly sold (common practice, no source)."""
@@ -37,6 +37,9 @@ SOLD_OHM = (1.0, 10e6)
 
 MOST_OWNED = 40_000
 """Ways to choose the parts beside the bought one that are looked at."""
+
+NEIGHBOURS = 4
+"""Values on sale around the wanted one that are weighed."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -89,7 +92,8 @@ def one_purchase(
     Returns
     -------
     The purchase with the smallest error, from E24, else from E96 for resistors; E6 for
-    capacitors. None where no single part helps.
+    capacitors. None where no single part helps beside the first MOST_OWNED ways to use what is
+    owned, or of a counter for any output.
     """
     for variant in request.circuit.variants:
         circuit = replace(request.circuit, variants=(variant,))
@@ -129,23 +133,74 @@ def _bought(
     bought = np.array(_on_sale(slot, series, request))
     if not combinations or not len(bought):
         return None
-    owned = np.array(
-        [[holding.part.effective for holding in combination] for combination in combinations]
-    ).reshape(len(combinations), len(others))
-    columns: dict[str, Floats] = {slot: np.tile(bought, len(owned))}
-    for place, name in enumerate(others):
-        columns[name] = np.repeat(owned[:, place], len(bought))
-    leak = _leaks(slot, bought, combinations, others, request)
+    values = {
+        name: np.array([way[place].part.effective for way in combinations])
+        for place, name in enumerate(others)
+    }
+    leak = _owned_leaks(combinations, others, request)
+    choice = _nearest(bought, _wanted(slot, values, leak, request))
+    columns = {name: np.repeat(column, NEIGHBOURS) for name, column in values.items()}
+    columns[slot] = bought[choice.ravel()]
+    leak = np.repeat(leak, NEIGHBOURS)
+    if slot == "C" and not request.circuit.lossless:
+        own = [
+            leak_conductance(_part("C", float(value)), request.circuit.supply) for value in bought
+        ]
+        leak = np.array([each.typical for each in own])[choice.ravel()]
     errors = _errors(columns, leak, request)
     best = int(np.argmin(np.round(errors, 4)))
     if not errors[best] <= request.within:
         return None
-    row, place = divmod(best, len(bought))
-    part = _part(slot, float(bought[place]))
-    pairs = tuple(zip(others, combinations[row], strict=True))
-    values = {name: float(column[best]) for name, column in columns.items()}
-    output, error = _worst(values, float(leak[best]), request)
+    part = _part(slot, float(columns[slot][best]))
+    pairs = tuple(zip(others, combinations[best // NEIGHBOURS], strict=True))
+    made = {name: float(column[best]) for name, column in columns.items()}
+    output, error = _worst(made, float(leak[best]), request)
     return Purchase(part, slot, series, pairs, output, error, request.boards)
+
+
+def _nearest(bought: Floats, wanted: Floats) -> Ints:
+    """Return, for each wanted value, the places of its neighbours on sale: (n, NEIGHBOURS)."""
+    place = np.searchsorted(bought, np.nan_to_num(wanted, nan=0.0, posinf=np.inf))
+    around = place[:, None] + np.arange(NEIGHBOURS) - NEIGHBOURS // 2
+    return np.asarray(np.clip(around, 0, len(bought) - 1))
+
+
+def _wanted(slot: str, values: dict[str, Floats], leak: Floats, request: Request) -> Floats:
+    """Return what the bought part should be beside each way to fill the other slots.
+
+    Of two resistors near enough: what is bought is a neighbour, and every neighbour is weighed.
+    """
+    circuit = request.circuit
+    if not circuit.resistors or not circuit.capacitor:
+        return np.full(len(leak), request.target)
+    if len(circuit.resistors) == 1:
+        time = request.target / circuit.variants[0].scale
+        if slot == "R":
+            return circuit.law.resistance(time, values["C"], leak)
+        with np.errstate(divide="ignore"):
+            return np.asarray(time / circuit.law.interval(values["R"], 1.0, 0.0))
+    return _wanted_of_pair(slot, values, leak, request)
+
+
+def _wanted_of_pair(slot: str, values: dict[str, Floats], leak: Floats, request: Request) -> Floats:
+    law, (high, low) = request.circuit.twin, aim_of(request)
+    by_period = any(target.output == "period" for target in request.targets)
+    with np.errstate(all="ignore"):
+        if slot == "C":
+            made = law.times((values["RA"], values["RB"]), 1.0, 0.0)
+            if by_period:
+                return np.asarray((high + low) / (made[0] + made[1]))
+            return np.asarray(np.sqrt(high / made[0] * low / made[1]))
+        c = values["C"]
+        if slot == "RA":
+            other = law.times((FAR_OHM, values["RB"]), c, leak)[1]
+            time = high + low - other if by_period else np.full(len(c), high)
+            return law.ra_for(np.maximum(time, 1e-3 * high), values["RB"], c, leak)
+        if by_period:
+            rest = law.times((values["RA"], LEAST_OHM), c, leak)[0]
+            left = np.maximum(high + low - rest, 1e-3 * low) / (2.0 if law.through_both else 1.0)
+            return law.rb_for(left, values["RA"], c, leak)
+        return law.rb_for(np.full(c.shape, low), values["RA"], c, leak)
 
 
 def _combinations(choices: list[list[Holding]], boards: int) -> Iterator[tuple[Holding, ...]]:
@@ -175,24 +230,16 @@ def _part(slot: str, value: float) -> Part:
     return Part(Kind.CAPACITOR, value, technology=technology)
 
 
-def _leaks(
-    slot: str,
-    bought: Floats,
-    combinations: Sequence[tuple[Holding, ...]],
-    others: Sequence[str],
-    request: Request,
+def _owned_leaks(
+    combinations: Sequence[tuple[Holding, ...]], others: Sequence[str], request: Request
 ) -> Floats:
-    """Return the typical leak of each combination's capacitor in siemens."""
+    """Return the typical leak of each combination's capacitor in siemens; 0 where it has none."""
     circuit = request.circuit
-    if circuit.lossless or not circuit.capacitor:
-        return np.zeros(len(bought) * len(combinations))
-    if slot == "C":
-        parts = [_part("C", float(value)) for value in bought]
-        leaks = [leak_conductance(part, circuit.supply).typical for part in parts]
-        return np.tile(leaks, len(combinations))
+    if circuit.lossless or "C" not in others:
+        return np.zeros(len(combinations))
     place = others.index("C")
-    owned = [leak_conductance(each[place].part, circuit.supply).typical for each in combinations]
-    return np.repeat(owned, len(bought))
+    leaks = (leak_conductance(way[place].part, circuit.supply).typical for way in combinations)
+    return np.fromiter(leaks, np.float64, len(combinations))
 
 
 def _errors(columns: dict[str, Floats], leak: Floats, request: Request) -> Floats:

@@ -32,12 +32,14 @@ class Target:
     low, high : the accepted range, both ends included; equal where one value is wanted. Second,
         a fraction for a duty, ohm or farad.
     frequency : in hertz, where a period was asked for by its frequency.
+    called : what the output is called by who asked, such as "on"; "" for its own name.
     """
 
     output: str
     low: float
     high: float
     frequency: float | None = None
+    called: str = ""
 
     @property
     def is_range(self) -> bool:
@@ -142,7 +144,7 @@ class Fit:
     slots : in the order of the circuit, the capacitor last. variant : how the output is taken.
     outlook : nominal, corners, spread, chance.
     errors : (nominal - target) / target by output with a target; error : the largest of them.
-    spread : one sigma of that output, relative.
+    spread : one sigma of the chief output, relative.
     likely_miss : root of mean error squared plus spread squared, the largest of any target.
     in_band : whether every nominal output is inside its accepted band.
     cautions : the one that matters most first.

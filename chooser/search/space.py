@@ -65,6 +65,8 @@ class Space:
         self._capacitor_tables = Tables(
             self.capacitors.adding, self.capacitors.uses, MOST_CAPACITOR_NETWORKS
         )
+        # Each network stands in the list once for each variant of the circuit.
+        self._most_listed = MOST_CAPACITOR_NETWORKS // len(request.circuit.variants)
         self._slots: dict[int, CapacitorSlots | None] = {}
 
     def levels(self) -> Iterator[Level]:
@@ -83,7 +85,7 @@ class Space:
         if capacitors not in self._slots:
             if capacitors == 0:
                 self._slots[0] = no_capacitor(self.request)
-            elif self._capacitor_tables.count(capacitors) > MOST_CAPACITOR_NETWORKS:
+            elif self._capacitor_tables.count(capacitors) > self._most_listed:
                 self.not_listed |= {capacitors}
                 self._slots[capacitors] = None
             else:

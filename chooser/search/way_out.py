@@ -9,12 +9,20 @@ from chooser.cautions import Code
 from chooser.circuits.counter import counter
 from chooser.circuits.counters import counter_named
 from chooser.networks import write_network
-from chooser.quantities import format_capacitance, format_duration, format_resistance
+from chooser.quantities import (
+    format_capacitance,
+    format_duration,
+    format_resistance,
+    format_voltage,
+)
 from chooser.search.request import Fit, Request
 from chooser.search.terms import Rank, Rule
 
 USUAL_COUNTER = "HEF4060B"
 """The counter that is offered: one of the commonest (common practice, no source)."""
+
+USUAL_SUPPLY = 9.0
+"""Volt that the commands assume where none is said."""
 
 ONE_SHOTS = frozenset({"monostable", "logic-monostable", "delay"})
 """Families whose single interval a counter can make as well."""
@@ -76,6 +84,8 @@ def _divided(request: Request, search: Search) -> str | None:
     r, c = (_written(fit, name) for name in ("R", "C"))
     made = format_duration(fit.outlook.chief.nominal, digits=4)
     command = f"chooser fit counter {format_duration(request.target).replace(' ', '')}"
+    if supply != USUAL_SUPPLY:
+        command += f" --supply {format_voltage(supply).replace(' ', '')}"
     return (
         f"The same stock makes it with an oscillator and counter ({chip.name}, output "
         f"{fit.variant.name}): R = {r} and C = {c} for {made}; see `{command}`."

@@ -1,11 +1,13 @@
 """The score of the balanced order, bounds to it, and which resistor networks are weighed.
 
-The score of a circuit is its likely miss x PER_PART ** parts, the largest of its targets', plus
-OUTSIDE where it misses the accepted band.
+The score of a circuit is its likely miss x PER_PART ** parts, the largest of its targets'. Where
+it misses the accepted band it is its error plus OUTSIDE: nobody builds such a circuit, and what is
+asked then is how near the stock comes.
 """
 
 from __future__ import annotations
 
+from dataclasses import replace
 from math import inf
 from typing import Protocol, TypeAlias
 
@@ -17,7 +19,7 @@ from chooser.circuits.circuit import outputs_of
 from chooser.interval import likely_miss, mean_of, spread_of, weight_of
 from chooser.networks import Join
 from chooser.search.front import OUTSIDE
-from chooser.search.joint import errors_of
+from chooser.search.joint import Inverse, errors_of, in_ranges, reach_windows
 from chooser.search.nearest import Wish, nearest, reach
 from chooser.search.pairs import SAME
 from chooser.search.pools import Floats, Ints
@@ -70,11 +72,12 @@ def weigher_of(space: Space) -> Weigher:
     return TwinWeigher(space) if two else SingleWeigher(space)
 
 
-def settled(score: Floats, outside: NDArray[np.bool_]) -> Floats:
-    """Return scores with what is outside the band behind everything inside.
+def settled(score: Floats, outside: NDArray[np.bool_], error: Floats) -> Floats:
+    """Return scores with what is outside the band behind everything inside, by its error.
 
     They are told apart to twelve digits, so that rounding cannot order equal circuits.
     """
+    score = np.where(outside, np.nan_to_num(error, nan=inf), score)
     score = np.where(np.isfinite(score), np.minimum(score, OUTSIDE / 2), OUTSIDE / 2)
     return np.asarray(np.round(score, 12) + OUTSIDE * outside)
 
@@ -137,7 +140,10 @@ class SingleWeigher:
         best = self._lots.best if level.resistors and self._law.proportional else 0.0
         spread = spread_of((1.0, 1.0), (best, c_spread), self._device.spread)
         if not level.resistors:
-            return np.asarray(spread * PER_PART**level.parts * (1 - SAME))
+            error = np.abs(slots.farad / request.target - 1)
+            outside = error > request.within + SAME
+            inside = spread * PER_PART**level.parts
+            return np.asarray(np.where(outside, OUTSIDE + error, inside) * (1 - SAME))
         # Longest and shortest time that the resistors in reach can make, over the target.
         lowest, highest = reach(self._tables, level.resistors[0])
         short = self._share(np.minimum(slots.most, highest), slots)
@@ -147,7 +153,9 @@ class SingleWeigher:
             miss: Floats = spread  # the mean may be nearer than the nominal interval
         else:
             miss = likely_miss(np.maximum(np.maximum(1 - short, long - 1), 0.0), spread)
-        floor = np.minimum(miss * PER_PART**level.parts, OUTSIDE / 2) * (1 - SAME)
+        error = np.maximum(np.maximum(1 - short, long - 1), 0.0)
+        floor = np.where(outside, error, miss * PER_PART**level.parts)
+        floor = np.minimum(floor, OUTSIDE / 2) * (1 - SAME)
         return np.where(long > short, inf, floor + OUTSIDE * outside)
 
     def _share(self, ohm: Floats, slots: CapacitorSlots) -> Floats:
@@ -182,7 +190,7 @@ class SingleWeigher:
             spread = spread_of((steep, 1.0), (r_spread, c_spread), self._device.spread)
             score = likely_miss(mean / target - 1, spread) * PER_PART**parts
         outside = np.abs(nominal / target - 1) > self._request.within + SAME
-        return settled(score, outside)
+        return settled(score, outside, np.abs(nominal / target - 1))
 
 
 class TwinWeigher:
@@ -193,6 +201,7 @@ class TwinWeigher:
     """
 
     def __init__(self, space: Space) -> None:
+        self._space = space
         self._request = space.request
         self._law = space.request.circuit.twin
         self._device = device_law(space.request.circuit.error)
@@ -203,12 +212,17 @@ class TwinWeigher:
     def least_score(self, slots: CapacitorSlots, level: Level) -> Floats:
         """Return a score that no circuit of a level on a capacitor network can be below.
 
-        The spread of any time is at least that of the capacitors and the device.
+        The spread of any time is at least that of the capacitors and the device; where nothing
+        in reach comes into the band, the error is at least that of what comes nearest.
         """
         c_spread, _ = self._lots.of_capacitors(slots.rows)
         spread = spread_of((1.0,), (c_spread,), self._device.spread)
-        floor = np.minimum(spread * PER_PART**level.parts, OUTSIDE / 2) * (1 - SAME)
-        return np.asarray(np.where(slots.least > slots.most, inf, floor))
+        reach = reach_windows(self._space, level.resistors, slots)
+        error = Inverse(self._law, slots, reach).least_errors(self._request.targets, reach)
+        outside = error > self._request.within + SAME
+        floor = np.where(outside, error, spread * PER_PART**level.parts)
+        floor = np.minimum(floor, OUTSIDE / 2) * (1 - SAME)
+        return np.asarray(np.where(error == inf, inf, floor + OUTSIDE * outside))
 
     def near(
         self, slots: CapacitorSlots, chosen: Ints, level: Level, last: float
@@ -246,14 +260,17 @@ class TwinWeigher:
     def _room(self, slots: CapacitorSlots, level: Level, last: float) -> Floats:
         """Return how far a resistance may be off before its error alone costs the last place.
 
-        Twice the error that the score leaves room for: times follow the charging resistance
-        nearly in proportion.
+        Twice the error that the score leaves room for: high and low times follow the charging
+        resistance nearly in proportion. Where a duty is wanted as well, or parts shift the mean,
+        no such room is known, and everything is weighed.
         """
-        if last >= OUTSIDE:
+        times = all(target.output in ("high", "low") for target in self._request.targets)
+        if last >= OUTSIDE or not times or self._lots.shifted or self._device.shift:
             return np.full(len(slots), inf)
-        floor = self.least_score(slots, level) / PER_PART**level.parts
+        c_spread, _ = self._lots.of_capacitors(slots.rows)
+        floor = spread_of((1.0,), (c_spread,), self._device.spread)
         allowed_miss = last / PER_PART**level.parts
-        return 2 * np.sqrt(np.maximum(allowed_miss**2 - floor**2, 0.0)) + SAME
+        return np.asarray(2 * np.sqrt(np.maximum(allowed_miss**2 - floor**2, 0.0)) + SAME)
 
     def _completing(
         self, rb: Floats, slot: Ints, aims: tuple[Floats, ...], slots: CapacitorSlots
@@ -298,12 +315,10 @@ class TwinWeigher:
                 mean = mean_of(made[target.output], steep, shifts, device)
                 spread = spread_of(steep, spreads, weight * self._device.spread)
                 miss = np.maximum(miss, likely_miss(_error(target, mean), spread))
-        outside = errors_of(self._request, times) > self._request.within + SAME
-        for target in self._request.targets:
-            if target.is_range:
-                outside |= _error(target, made[target.output]) != 0.0
-        score = settled(miss * PER_PART**parts, outside)
-        return np.asarray(np.where(np.isfinite(sum(times)), score, inf))
+        error = errors_of(replace(self._request, ranges_hold=False), times)
+        outside = (error > self._request.within + SAME) | ~in_ranges(self._request, times)
+        found = settled(miss * PER_PART**parts, outside, error)
+        return np.asarray(np.where(np.isfinite(error), found, inf))
 
     def _follows(
         self, output: str, rs: tuple[Floats, ...], farad: Floats, leak: Floats

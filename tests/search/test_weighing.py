@@ -112,7 +112,7 @@ def single_parts(holdings, request):
 
 
 def scored(request, values, parts, leak):
-    """Likely miss x 1.1 ** 3 by differences, and whether a band is missed."""
+    """Likely miss x 1.1 ** 3 by differences, outside the band the error; and whether it is out."""
     circuit = request.circuit
 
     def made(moved):
@@ -121,6 +121,7 @@ def scored(request, values, parts, leak):
     usual, device = made(values), circuit.error.plus / 3
     limits = [[limits_of(part) for part in way] for way in parts]
     outside, worst = np.zeros(len(parts), dtype=bool), np.zeros(len(parts))
+    errors = np.zeros(len(parts))
     for target in request.targets:
         mean = usual[target.output].copy()
         variance = np.full(len(parts), device**2 * (target.output != "duty"))
@@ -139,12 +140,14 @@ def scored(request, values, parts, leak):
         low, high = target.band(request.within)
         value = usual[target.output]
         outside |= (value < low * (1 - 1e-9)) | (value > high * (1 + 1e-9))
-    return outside, worst * PER_PART**3
+        errors = np.maximum(errors, np.maximum(1 - value / target.low, value / target.high - 1))
+    return outside, np.where(outside, errors, worst * PER_PART**3)
 
 
 def score_of(fit):
     # To ten digits: of what is equal in truth, rounding may put either first.
-    return not fit.in_band, round(fit.likely_miss * PER_PART**fit.parts, 10)
+    score = fit.likely_miss * PER_PART**fit.parts if fit.in_band else abs(fit.error)
+    return not fit.in_band, round(score, 10)
 
 
 def values_of(fit):
