@@ -72,6 +72,7 @@ def _run(family: Family, options: dict[str, Any]) -> None:
     from chooser.cli.check_view import print_verdict
     from chooser.cli.stock_source import holdings_from
     from chooser.cli.typed_parts import read_slot
+    from chooser.cli.wishes import read_option
     from chooser.quantities import parse_percent
     from chooser.verdict import judged
 
@@ -86,10 +87,10 @@ def _run(family: Family, options: dict[str, Any]) -> None:
         circuit,
         networks,
         targets,
-        parse_percent(options["within"]),
-        _warmth(options["temperature"]),
+        read_option(options, "within", parse_percent),
+        _warmth(options),
         variant=_variant(circuit),
-        at_supply=_at_supply(family, options),
+        at_supply=_at_supply(family, circuit, options),
     )
     print_verdict(verdict, as_json=options["as_json"])
 
@@ -103,13 +104,14 @@ def _text_of(options: dict[str, Any], name: str) -> str:
     return text
 
 
-def _warmth(text: str | None) -> Any:
+def _warmth(options: dict[str, Any]) -> Any:
+    from chooser.cli.wishes import read_option
     from chooser.quantities import parse_temperature_range
     from chooser.temperature import Warmth
 
-    if text is None:
+    if options["temperature"] is None:
         return None
-    span = parse_temperature_range(text)
+    span = read_option(options, "temperature", parse_temperature_range)
     return Warmth(span.low, span.high)
 
 
@@ -123,9 +125,11 @@ def _variant(circuit: Circuit) -> Variant:
     )
 
 
-def _at_supply(family: Family, options: dict[str, Any]) -> Callable[[float], Circuit] | None:
+def _at_supply(
+    family: Family, circuit: Circuit, options: dict[str, Any]
+) -> Callable[[float], Circuit] | None:
     """Return how to build the same circuit at another supply, where it has one."""
-    if options.get("supply") is None:
+    if not circuit.supply:
         return None
     return lambda volt: family.circuit({**options, "supply": f"{volt}V"})
 

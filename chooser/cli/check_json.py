@@ -9,9 +9,10 @@ from math import isfinite
 from typing import Any
 
 from chooser.cli.check_words import cause_text, network_text, part_text
-from chooser.cli.fit_json import reading_json, targets_json, wanted_of
+from chooser.cli.fit_json import reading_json, taken_json, targets_json, wanted_of
 from chooser.cli.words import picked
 from chooser.climate import Climate
+from chooser.interval import likely_miss
 from chooser.verdict import Verdict
 
 
@@ -25,18 +26,15 @@ def verdict_json(verdict: Verdict) -> dict[str, Any]:
         **({"timer": circuit.timer.name} if circuit.timer else {}),
         "device": circuit.device,
         "supply": circuit.supply,
-        **({"output": verdict.variant.name} if verdict.variant.name else {}),
+        "setting": circuit.setting,
+        **(taken_json(circuit, verdict.variant) if verdict.variant.name else {}),
         "outputs": {
             reading.output: reading_json(reading, wanted_of(reading.output, verdict.targets))
             for reading in verdict.outlook.readings
         },
         "first": _first(verdict),
         "spread": verdict.outlook.chief.spread,
-        **(
-            {"in_band": verdict.in_band, "chance": verdict.outlook.chance}
-            if verdict.targets
-            else {}
-        ),
+        **_compared(verdict),
         "slots": {slot: _slot(verdict, slot) for slot in circuit.slots},
         "causes": [
             {
@@ -53,6 +51,21 @@ def verdict_json(verdict: Verdict) -> dict[str, Any]:
         "cautions": _cautions(verdict),
     }
     return {name: _finite(value) for name, value in found.items()}
+
+
+def _compared(verdict: Verdict) -> dict[str, Any]:
+    """Give how it does against its targets, where it has some."""
+    if not verdict.targets:
+        return {}
+    pairs = [(target, verdict.outlook.of(target.output)) for target in verdict.targets]
+    return {
+        "in_band": verdict.in_band,
+        "chance": verdict.outlook.chance,
+        "likely_miss": max(
+            float(likely_miss(target.error(reading.mean), reading.spread))
+            for target, reading in pairs
+        ),
+    }
 
 
 def _first(verdict: Verdict) -> dict[str, Any] | None:

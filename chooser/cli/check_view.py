@@ -1,8 +1,7 @@
 """How a verdict is shown: a page for people, an object for programs.
 
 A page runs from what matters at once (what it does, whether that is what was wanted) to what is
-only looked up (temperature, supply), then the cautions. No figure has more digits than its spread
-leaves a meaning.
+only looked up (temperature, supply), then the cautions.
 """
 
 from __future__ import annotations
@@ -10,28 +9,39 @@ from __future__ import annotations
 import shutil
 import sys
 from collections.abc import Iterable
-from math import ceil, inf, isfinite, log10
+from math import inf, isfinite
 
 from chooser import quantities
 from chooser.causes import Cause
 from chooser.cautions import METER_OHM, Code
 from chooser.circuits.circuit import TIMED
 from chooser.cli.check_json import verdict_json
-from chooser.cli.check_words import cause_text, network_text, pick_text
+from chooser.cli.check_wishes import is_ending, paper_sentences, wish_sentences
+from chooser.cli.check_words import (
+    called,
+    cause_text,
+    digits_of,
+    network_text,
+    nominal_text,
+    percent_text,
+    pick_text,
+    time_name,
+)
 from chooser.cli.stock_view import print_json
 from chooser.cli.tables import print_line, table_lines
 from chooser.cli.words import (
-    FAR,
-    chance_text,
+    ends_text,
+    fitted,
+    output_name,
     output_text,
     picked,
+    place_texts,
     standing_lines,
     wrapped,
 )
 from chooser.climate import Climate, widest
-from chooser.interval import Reading
-from chooser.search.request import Target
-from chooser.verdict import PerVolt, Verdict
+from chooser.temperature import REFERENCE_CELSIUS
+from chooser.verdict import Leakage, Verdict
 
 BAR = 20
 """Columns of a bar that stands for the whole spread."""
@@ -43,10 +53,6 @@ WORTH_A_WORD = 0.001
 """Relative change below which nothing is said of what makes it."""
 
 INDENT = "    "
-_SIGMAS = 6.0
-"""Spreads that fit between the ends of a worst case, as a rule."""
-
-_TOO_FAST = (Code.SHORT_INTERVAL, Code.FREQUENCY_LIMIT)
 
 
 def print_verdict(verdict: Verdict, *, as_json: bool) -> None:
@@ -69,12 +75,12 @@ def verdict_lines(verdict: Verdict, width: int | None) -> list[str]:
     """
     sections = (
         [*wrapped(_heading(verdict), width), *_slots(verdict, width)],
-        [*_outputs(verdict, width), *_sentences(_wishes(verdict), width)],
+        [*_outputs(verdict, width), *_sentences(_compared(verdict), width)],
         _sentences(_first(verdict), width),
         _causes(verdict, width),
         _sentences(_losses(verdict), width),
         _temperature(verdict, width),
-        _sentences(_supply(verdict.per_volt, verdict.outlook.chief.output), width),
+        _sentences(_supply(verdict), width),
         _cautions(verdict, width),
         _standing(verdict, width),
     )
@@ -86,10 +92,8 @@ def verdict_lines(verdict: Verdict, width: int | None) -> list[str]:
 
 def _heading(verdict: Verdict) -> str:
     circuit = verdict.circuit
-    device = f", {circuit.device}" if circuit.device else ""
-    volt = quantities.format_voltage(circuit.supply, digits=4) if circuit.supply else ""
-    output = f", output {verdict.variant.name}" if verdict.variant.name else ""
-    return f"{circuit.title}{device}{' at ' if volt else ''}{volt}{output}."
+    output = [f"output {verdict.variant.name}"] if verdict.variant.name else []
+    return f"{', '.join([circuit.title, *place_texts(circuit), *output])}."
 
 
 def _slots(verdict: Verdict, width: int | None) -> list[str]:
@@ -116,102 +120,30 @@ def _outputs(verdict: Verdict, width: int | None) -> list[str]:
     headings = ("output", "nominal", "worst case", "1 sigma")
     rows = [
         [
-            reading.output,
-            _nominal(reading),
-            _ends(reading.output, reading.low, reading.high),
-            _percent(reading.spread) if isfinite(reading.spread) else "",
+            output_name(reading.output, called(reading.output, verdict.targets)),
+            nominal_text(reading),
+            ends_text(reading.output, reading.low, reading.high),
+            percent_text(reading.spread) if isfinite(reading.spread) else "",
         ]
         for reading in verdict.outlook.readings
     ]
-    return _fitted(table_lines(headings, rows, (), width), width)
+    return fitted(table_lines(headings, rows, (), width), width, INDENT)
 
 
-def _nominal(reading: Reading) -> str:
-    return _text(reading.output, reading.nominal, _digits(reading))
-
-
-def _digits(reading: Reading) -> int:
-    """Return how many digits of a nominal mean something, at least three."""
-    spread = reading.spread
-    if reading.high is not None and 0.0 < reading.nominal < inf:
-        # What only the corners know (output levels, thresholds) is not in the spread.
-        spread = max(spread, (reading.high - reading.low) / reading.nominal / _SIGMAS)
-    if not 0.0 < spread < inf:
-        return 6
-    return min(max(1 - ceil(log10(spread)), 3), 6)
-
-
-def _text(output: str, value: float, digits: int) -> str:
-    """Write an output; one that is no number belongs to an output that is stuck."""
-    if output == "frequency" and value == 0.0:
-        return "stops"
-    return output_text(output, value, digits=digits) if value == value else "stuck"  # noqa: PLR0124
-
-
-def _ends(output: str, low: float, high: float | None) -> str:
-    """Write the ends of a worst case."""
-    most = "never" if high is None else _text(output, high, 3)
-    return f"{_text(output, low, 3)} to {most}"
-
-
-def _percent(fraction: float, *, signed: bool = False) -> str:
-    if abs(fraction) < 1e-5:  # noqa: PLR2004 - less than a thousandth of a percent
-        return "0%" if fraction == 0.0 else "less than 0.001%"
-    return quantities.format_percent(fraction, digits=2, signed=signed)
-
-
-def _wishes(verdict: Verdict) -> list[str]:
-    """Compare each output with its target, and say how many builds land in the bands."""
-    said = [_wish(verdict, target) for target in verdict.targets]
-    if not said:
-        return []
-    band = "the band" if len(said) == 1 else "all bands"
-    if any(caution.code in _TOO_FAST for caution in verdict.cautions):
-        return [*said, f"How many builds lie in {band} is unknown: the device's delays rule."]
-    return [*said, f"Of builds alike, {chance_text(verdict.outlook.chance)} lie in {band}."]
-
-
-def _wish(verdict: Verdict, target: Target) -> str:
-    reading = verdict.outlook.of(target.output)
-    low, high = (output_text(target.output, end, digits=6) for end in target.band(verdict.within))
-    wanted = f"{low} to {high}" if target.is_range else output_text(target.output, target.low)
-    name, text = _capital(target.output), error_text(reading, target)
-    ratio = 1.0 + target.error(reading.nominal)
-    if not 1.0 / FAR < ratio < FAR:
-        return f"{name}: {text}, not {wanted}."
-    inside = "" if target.is_range else f" ({low} to {high} accepted)"
-    return f"{name}: {text}, where {wanted} was wanted{inside}."
-
-
-def error_text(reading: Reading, target: Target) -> str:
-    """Write how far an output is from its target; far ones as a factor."""
-    ratio = 1.0 + target.error(reading.nominal)
-    more, less = ("long", "short") if target.output in TIMED else ("high", "low")
-    if not isfinite(ratio) or ratio <= 0.0:
-        return _nominal(reading)
-    if ratio >= FAR:
-        return f"{_factor(ratio)} x too {more}: {_nominal(reading)}"
-    if ratio <= 1.0 / FAR:
-        return f"{_factor(1.0 / ratio)} x too {less}: {_nominal(reading)}"
-    if target.is_range and ratio == 1.0:
-        return "inside the range"
-    return f"{_percent(ratio - 1.0, signed=True)} off"
-
-
-def _factor(ratio: float) -> str:
-    """Write a factor with two digits that mean something."""
-    return f"{float(f'{ratio:.2g}'):,.0f}"
+def _compared(verdict: Verdict) -> list[str]:
+    return [*wish_sentences(verdict), *paper_sentences(verdict)]
 
 
 def _first(verdict: Verdict) -> list[str]:
     first = verdict.first
-    if first is None:
+    if first is None or not isfinite(first.nominal):
         return []
     later = verdict.outlook.of(first.output)
-    time = _text(first.output, first.nominal, _digits(later))
+    time = output_text(first.output, first.nominal, digits=digits_of(later))
     than = "longer" if first.nominal >= later.nominal else "shorter"
-    ends = _ends(first.output, first.low, first.high)
-    return [f"The first {_called(first.output)} after power-up is {than}: {time} ({ends})."]
+    ends = ends_text(first.output, first.low, first.high)
+    name = time_name(first.output, verdict.targets)
+    return [f"The first {name} after power-up is {than}: {time} ({ends})."]
 
 
 def _causes(verdict: Verdict, width: int | None) -> list[str]:
@@ -219,11 +151,11 @@ def _causes(verdict: Verdict, width: int | None) -> list[str]:
     if not verdict.causes:
         return []
     output = verdict.outlook.chief.output
-    spread = _percent(verdict.outlook.chief.spread)
+    spread = percent_text(verdict.outlook.chief.spread)
     title = f"What makes the spread of the {output} ({spread}, 1 sigma):"
     headings = ("cause", "share", "without it", "")
     rows = [
-        [cause_text(cause, verdict), _share(cause), _percent(cause.spread_without), _bar(cause)]
+        [cause_text(cause, verdict), _share(cause), percent_text(cause.spread_without), _bar(cause)]
         for cause in verdict.causes
     ]
     table = table_lines(headings, rows, ("share", "without it"))
@@ -231,7 +163,7 @@ def _causes(verdict: Verdict, width: int | None) -> list[str]:
         table = table_lines(headings[:3], [row[:3] for row in rows], headings[1:3])
     if width is not None and max(map(len, table)) > width:
         table = table_lines(headings[:3], [row[:3] for row in rows], headings[1:3], width, "cause")
-    return [*wrapped(title, width), *_fitted(table, width)]
+    return [*wrapped(title, width), *fitted(table, width, INDENT)]
 
 
 def _share(cause: Cause) -> str:
@@ -252,33 +184,35 @@ def _losses(verdict: Verdict) -> list[str]:
         return []
     said = []
     if leakage.ratio < inf or leakage.ratio_limit < inf:
-        costs = (
-            f"that makes the {_called(leakage.output)} {_longer(leakage.stretch)}, at the limits "
-            f"{_longer(leakage.stretch_limit)}"
-        )
-        if leakage.stretch_limit < WORTH_A_WORD:
-            costs = "leakage hardly counts"
         said.append(
             f"At the trip point the charging current is {_times(leakage.ratio)} what leaks, and "
-            f"with all at their limits {_times(leakage.ratio_limit)}; {costs}."
+            f"with all at their limits {_times(leakage.ratio_limit)}; {_costs(leakage, verdict)}."
         )
+    return [*said, *_metered(leakage, verdict)]
+
+
+def _costs(leakage: Leakage, verdict: Verdict) -> str:
+    """Say what the losses do to the time in which the capacitor is charged."""
+    if leakage.stretch_limit < WORTH_A_WORD:
+        return "leakage hardly counts"
+    makes = f"that makes the {time_name(leakage.output, verdict.targets)}"
+    if not isfinite(leakage.stretch):
+        return f"{makes} endless"
+    return f"{makes} {_longer(leakage.stretch)}, at the limits {_longer(leakage.stretch_limit)}"
+
+
+def _metered(leakage: Leakage, verdict: Verdict) -> list[str]:
+    """Say what a meter on the timing node does, where it does anything that was not told."""
+    reading = verdict.outlook.of(leakage.output)
     told = any(caution.code is Code.METER_ON_NODE for caution in verdict.cautions)
-    if leakage.metered is not None and not told:
-        digits = _digits(verdict.outlook.of(leakage.output))
-        time = _text(leakage.output, leakage.metered, digits)
-        made = time if isfinite(leakage.metered) else "endless"
-        ohm = quantities.format_resistance(METER_OHM)
-        said.append(f"A {ohm} meter on the timing node would make it {made}.")
-    return said
-
-
-def _called(output: str) -> str:
-    """Return what a time is called in a sentence."""
-    return f"{output} time" if output in ("high", "low") else output
-
-
-def _capital(text: str) -> str:
-    return text[:1].upper() + text[1:]
+    if leakage.metered is None or told or not is_ending(reading):
+        return []
+    time = output_text(leakage.output, leakage.metered, digits=digits_of(reading))
+    if time == nominal_text(reading):
+        return []
+    made = time if isfinite(leakage.metered) else "endless"
+    ohm = quantities.format_resistance(METER_OHM)
+    return [f"A {ohm} meter on the timing node would make it {made}."]
 
 
 def _times(ratio: float) -> str:
@@ -288,7 +222,7 @@ def _times(ratio: float) -> str:
 def _longer(stretch: float) -> str:
     if not isfinite(stretch):
         return "endless"
-    return f"{_percent(stretch)} longer" if stretch > 0.0 else "no longer"
+    return f"{percent_text(stretch)} longer" if stretch > 0.0 else "no longer"
 
 
 def _temperature(verdict: Verdict, width: int | None) -> list[str]:
@@ -300,18 +234,19 @@ def _temperature(verdict: Verdict, width: int | None) -> list[str]:
     rows = [
         [
             quantities.format_temperature(climate.celsius, digits=4),
-            _nominal(climate.outlook.chief),
-            _ends(chief, climate.outlook.chief.low, climate.outlook.chief.high),
+            nominal_text(climate.outlook.chief),
+            ends_text(chief, climate.outlook.chief.low, climate.outlook.chief.high),
         ]
         for climate in climates
     ]
     if len(climates) > 1:
-        rows.append(["both", "", _ends(chief, *widest(climates, chief))])
+        rows.append(["both", "", ends_text(chief, *widest(climates, chief))])
     table = table_lines(("temperature", chief, "worst case"), rows, ("temperature",), width)
-    return [
-        *_fitted(table, width),
-        *_sentences((_moved(each, verdict) for each in climates), width),
-    ]
+    said = [_moved(each, verdict) for each in climates]
+    if len(climates) == 1:
+        reference = quantities.format_temperature(REFERENCE_CELSIUS)
+        said = [f"{said[0]} (parts are specified at {reference})"]
+    return [*fitted(table, width, INDENT), *_sentences((f"{each}." for each in said), width)]
 
 
 def _moved(climate: Climate, verdict: Verdict) -> str:
@@ -320,25 +255,30 @@ def _moved(climate: Climate, verdict: Verdict) -> str:
     said = []
     if mover is not None and mover.size >= WORTH_A_WORD:
         name = cause_text(mover, verdict)
-        ends = f"{_percent(mover.least, signed=True)} to {_percent(mover.most, signed=True)}"
+        ends = (
+            f"{percent_text(mover.least, signed=True)} to {percent_text(mover.most, signed=True)}"
+        )
         said.append(f"{name} moves it most, by {ends}")
     if climate.by_leakage == inf:
         said.append("the leakage alone makes it endless")
     elif abs(climate.by_leakage) >= WORTH_A_WORD:
-        said.append(f"the leakage moves it by {_percent(climate.by_leakage, signed=True)}")
+        said.append(f"the leakage moves it by {percent_text(climate.by_leakage, signed=True)}")
     where = quantities.format_temperature(climate.celsius, digits=4)
-    return f"At {where} {', and '.join(said) if said else 'nothing moves it to speak of'}."
+    return f"At {where} {', and '.join(said) if said else 'nothing moves it to speak of'}"
 
 
-def _supply(per_volt: PerVolt | None, output: str) -> list[str]:
+def _supply(verdict: Verdict) -> list[str]:
     """Say what one volt more of supply does."""
-    if per_volt is None:
+    per_volt, output = verdict.per_volt, verdict.outlook.chief.output
+    if per_volt is None or not is_ending(verdict.outlook.chief):
         return []
     said = []
     if per_volt.formula is not None and abs(per_volt.formula) >= WORTH_A_WORD / 10:
-        said.append(f"by {_percent(per_volt.formula, signed=True)} by its formula")
+        said.append(f"by {percent_text(per_volt.formula, signed=True)} by its formula")
     if per_volt.device:
-        said.append(f"by up to {_percent(per_volt.device)} either way by the device's own drift")
+        said.append(
+            f"by up to {percent_text(per_volt.device)} either way by the device's own drift"
+        )
     if not said:
         return [] if per_volt.formula is None else [f"The supply hardly moves the {output}."]
     return [f"One volt more of supply moves the {output} {', and '.join(said)}."]
@@ -349,17 +289,6 @@ def _cautions(verdict: Verdict, width: int | None) -> list[str]:
     for caution in verdict.cautions:
         lines += wrapped(f"{caution.code}: {caution.text}", width, hanging=INDENT)
     return lines
-
-
-def _fitted(table: list[str], width: int | None) -> list[str]:
-    """Break the lines of a table that was folded and is still too wide."""
-    if width is None:
-        return table
-    return [
-        piece
-        for line in table
-        for piece in ([line] if len(line) <= width else wrapped(line, width, hanging=INDENT))
-    ]
 
 
 def _sentences(said: Iterable[str], width: int | None) -> list[str]:

@@ -2,19 +2,26 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from pathlib import Path
-from typing import TYPE_CHECKING, Annotated, Any
+from typing import TYPE_CHECKING, Annotated, Any, TypeVar
 
 import typer
 
 from chooser.cli.composing import Parameter
-from chooser.cli.wishes import Options
+from chooser.cli.wishes import Options, read_option
 from chooser.errors import BadRequestError
 
 if TYPE_CHECKING:
     from chooser.circuits.circuit import Circuit
     from chooser.circuits.timers import Timer
     from chooser.parts import Tolerance
+
+D = TypeVar("D")
+
+DEFAULT_SUPPLY = "9V"
+LEAST_FACTOR, MOST_FACTOR = 0.02, 20.0
+"""Of a K = time / (R C): beyond them something else was typed (our limits)."""
 
 
 def _option(name: str, flag: str, metavar: str, help_text: str, default: str | None) -> Parameter:
@@ -30,7 +37,10 @@ def _file(name: str, flag: str, help_text: str) -> Parameter:
     return Parameter(name, Annotated[Path | None, option])
 
 
-SUPPLY = _option("supply", "--supply", "VOLT", "Supply of the circuit.", "9V")
+# With no default of its own, so that 9 V typed is told apart from nothing typed.
+SUPPLY = _option(
+    "supply", "--supply", "VOLT", f"Supply of the circuit; {DEFAULT_SUPPLY} if not given.", None
+)
 RATING = _option(
     "supply", "--supply", "VOLT", "Voltage that the capacitors must be rated for.", None
 )
@@ -155,46 +165,50 @@ def output_fed(options: Options) -> Circuit:
     from chooser.circuits.output_fed import output_fed as circuit
     from chooser.quantities import parse_current
 
-    load = parse_current(options["load"]) if options["load"] else 0.0
+    load = read_option(options, "load", parse_current) if options["load"] else 0.0
     return circuit(*_timer(options), load)
 
 
 def schmitt(options: Options) -> Circuit:
     """Return the Schmitt oscillator of the options."""
-    from chooser.circuits.gates import gate_named
+    from chooser.circuits.gates import check_gate_supply, gate_named
     from chooser.circuits.schmitt import schmitt as circuit
 
     gate = gate_named(options["chip"], options["chip_file"])
-    return circuit(gate, _supply(options), *_factor(options))
+    return circuit(gate, _supply(options, gate, check_gate_supply), *_factor(options))
 
 
 def logic_monostable(options: Options) -> Circuit:
     """Return the logic one-shot of the options."""
     from chooser.circuits.logic_monostable import logic_monostable as circuit
-    from chooser.circuits.one_shots import one_shot_named
+    from chooser.circuits.one_shots import check_one_shot_supply, one_shot_named
 
     one_shot = one_shot_named(options["chip"], options["chip_file"])
-    return circuit(one_shot, _supply(options), *_factor(options))
+    supply = _supply(options, one_shot, check_one_shot_supply)
+    return circuit(one_shot, supply, *_factor(options))
 
 
 def counter(options: Options) -> Circuit:
     """Return the oscillator and counter of the options."""
     from chooser.circuits.counter import counter as circuit
-    from chooser.circuits.counters import check_ratio, counter_named
+    from chooser.circuits.counters import check_counter_supply, check_ratio, counter_named
 
     chip = counter_named(options["chip"], options["chip_file"])
     outputs = None
     if options["ratio"] is not None:
         outputs = (check_ratio(chip, _ratio(options["ratio"])),)
-    return circuit(chip, _supply(options), outputs, whole_period=options["whole_period"])
+    supply = _supply(options, chip, check_counter_supply)
+    return circuit(chip, supply, outputs, whole_period=options["whole_period"])
 
 
 def delay(options: Options) -> Circuit:
     """Return the RC delay of the options."""
     from chooser.circuits.delay import delay as circuit
 
-    supply = _supply(options)
-    return circuit(supply, *_threshold(options["threshold"], supply))
+    supply = _volt(options, "supply") or _usual_supply()
+    return circuit(
+        supply, *read_option(options, "threshold", lambda text: _threshold(text, supply))
+    )
 
 
 def resistance(_options: Options) -> Circuit:
@@ -214,47 +228,77 @@ def capacitance(options: Options) -> Circuit:
 def _timer(options: Options) -> tuple[Timer, float]:
     from chooser.circuits.timers import check_supply, timer_named
 
-    timer, supply = timer_named(options["timer"], options["timer_file"]), _supply(options)
-    check_supply(timer, supply)
-    return timer, supply
+    timer = timer_named(options["timer"], options["timer_file"])
+    return timer, _supply(options, timer, check_supply)
 
 
-def _supply(options: Options) -> float:
+def _supply(options: Options, device: D, check: Callable[[D, float], None]) -> float:
+    """Return the supply that was asked for, or the default, once it suits the device."""
+    supply = _volt(options, "supply")
+    if supply is not None:
+        check(device, supply)
+        return supply
+    supply = _usual_supply()
+    try:
+        check(device, supply)
+    except BadRequestError as error:
+        told = str(error).removesuffix(".")
+        raise BadRequestError(f"{told} ({supply:g} V is the default; say --supply).") from error
+    return supply
+
+
+def _usual_supply() -> float:
     from chooser.quantities import parse_voltage
 
-    return parse_voltage(options["supply"])
+    return parse_voltage(DEFAULT_SUPPLY)
 
 
 def _volt(options: Options, name: str) -> float | None:
     from chooser.quantities import parse_voltage
 
-    return None if options[name] is None else parse_voltage(options[name])
+    return None if options[name] is None else read_option(options, name, parse_voltage)
 
 
 def _factor(options: Options) -> tuple[float | None, Tolerance | None]:
     from chooser.quantities import parse_factor
 
-    return (None, None) if options["factor"] is None else parse_factor(options["factor"])
+    if options["factor"] is None:
+        return None, None
+    factor, error = read_option(options, "factor", parse_factor)
+    if not LEAST_FACTOR <= factor <= MOST_FACTOR:
+        raise BadRequestError(
+            f"--factor: {options['factor']!r} is not believable; K = time / (R C) of these chips "
+            f"lies between {LEAST_FACTOR:g} and {MOST_FACTOR:g}, such as 0.83."
+        )
+    return factor, error
 
 
 def _ratio(text: str) -> int:
     plain = text.strip().lstrip("/")
     if not plain.isascii() or not plain.isdigit() or len(plain) > 12:  # noqa: PLR2004 - absurd
-        raise BadRequestError(f"{text!r} is no division ratio; write a whole number such as 16384.")
+        raise BadRequestError(
+            f"--ratio: {text!r} is no division ratio; write a whole number such as 16384."
+        )
     return int(plain)
 
 
 def _threshold(text: str, supply: float) -> tuple[float, Tolerance]:
     """Read a threshold, and how surely it is known, from one text."""
     from chooser.parts import Tolerance
-    from chooser.quantities import parse_percent, parse_tolerance, parse_voltage
+    from chooser.quantities import format_voltage, parse_percent, parse_tolerance, parse_voltage
 
     words = text.split()
     error = parse_tolerance(words.pop()) if len(words) > 1 else Tolerance(0.0, 0.0)
     value = " ".join(words)
     if value.endswith("%"):
         return parse_percent(value), error
-    return parse_voltage(value) / supply, error
+    volt = parse_voltage(value)
+    if volt >= supply:
+        raise BadRequestError(
+            f"--threshold: {format_voltage(volt)} is not reached from a supply of "
+            f"{format_voltage(supply)}; write a voltage below it, or a share such as 50%."
+        )
+    return volt / supply, error
 
 
 def _one_of(options: Options, name: str, allowed: tuple[str, ...]) -> None:

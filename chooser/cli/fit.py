@@ -99,6 +99,7 @@ def _run(family: Family, options: dict[str, Any]) -> None:
     """Answer one command."""
     from chooser.cli.fit_view import finish, print_answer
     from chooser.cli.stock_source import holdings_from
+    from chooser.cli.wishes import read_option
     from chooser.quantities import parse_percent
     from chooser.search.find import find_fits
     from chooser.search.request import Request
@@ -109,7 +110,7 @@ def _run(family: Family, options: dict[str, Any]) -> None:
     request = Request(
         circuit,
         family.targets(options, circuit),
-        within=parse_percent(options["within"]),
+        within=read_option(options, "within", parse_percent),
         rank=options["rank"],
         top=options["top"],
         boards=options["boards"],

@@ -6,6 +6,7 @@ from collections.abc import Sequence
 from typing import Any
 
 from chooser.cautions import STANDING
+from chooser.circuits.circuit import Circuit, Variant
 from chooser.cli.stock_view import value_text
 from chooser.cli.words import picked
 from chooser.interval import Reading
@@ -24,6 +25,7 @@ def answer_json(answer: Answer) -> dict[str, Any]:
         **({"timer": circuit.timer.name} if circuit.timer else {}),
         "device": circuit.device,
         "supply": circuit.supply,
+        "setting": circuit.setting,
         "boards": request.boards,
         "rank": str(request.rank),
         "searched": {
@@ -92,10 +94,16 @@ def _divided_json(fit: Fit, request: Request) -> dict[str, Any]:
         return {}
     period = fit.outlook.chief.nominal / fit.variant.scale
     return {
-        "output": fit.variant.name,
+        **taken_json(request.circuit, fit.variant),
         "oscillator": {"period": period, "frequency": 1 / period},
         "first_rises": {tap.name: period * tap.scale for tap in request.circuit.taps},
     }
+
+
+def taken_json(circuit: Circuit, variant: Variant) -> dict[str, Any]:
+    """Give the output of a counter, and the oscillator periods in a whole period of it."""
+    first_rise = next(tap.scale for tap in circuit.taps if tap.name == variant.name)
+    return {"output": variant.name, "ratio": round(2.0 * first_rise)}
 
 
 def reading_json(reading: Reading, target: Target | None = None) -> dict[str, Any]:

@@ -15,12 +15,25 @@ from chooser.cli.fit_json import answer_json
 from chooser.cli.stock_view import print_json, value_text
 from chooser.cli.supporting_view import supporting_json, supporting_lines
 from chooser.cli.tables import print_line, table_lines, visible
-from chooser.cli.words import FAR, chance_text, output_text, picked, standing_lines, wrapped
+from chooser.cli.words import (
+    FAR,
+    accepted_text,
+    chance_text,
+    ends_text,
+    output_name,
+    output_text,
+    picked,
+    place_texts,
+    shown_output,
+    standing_lines,
+    wanted_text,
+    wrapped,
+)
 from chooser.errors import Exit
-from chooser.interval import Reading
 from chooser.networks import write_network
 from chooser.parts import Holding
 from chooser.search.request import Answer, Fit, Request, Target
+from chooser.search.terms import Rank
 from chooser.supporting.picking import Supporting
 
 INDENT = "     "
@@ -28,6 +41,7 @@ TOO_FAST = (Code.SHORT_INTERVAL, Code.FREQUENCY_LIMIT)
 NEAREST_SHOWN = 3
 """Fits shown where all miss the band."""
 
+MANY = 10**12
 PPM = 1e-6
 TO_TIME = (5.0, 120.0)
 """Seconds that are worth timing and not too long to wait for."""
@@ -69,7 +83,7 @@ def answer_lines(
     shown = _shown(answer)
     notes = _notes(shown)
     if shown:
-        headings = _headings(answer)
+        headings = _headings(answer.request)
         rows = [_row(number, fit, answer.request, notes) for number, fit in shown]
         table = table_lines(headings, rows, headings[:-2])
         folded = width is not None and max(map(len, table)) > width
@@ -118,27 +132,22 @@ def _shown(answer: Answer) -> list[tuple[int, Fit]]:
 
 def _heading(answer: Answer) -> str:
     request = answer.request
-    circuit = request.circuit
     wishes = ", ".join(_wish_text(target, request) for target in request.targets)
-    where = f", {circuit.device} at {quantities.format_voltage(circuit.supply)}"
-    boards = "" if request.boards == 1 else f", {request.boards} boards"
-    return f"{circuit.title} of {wishes}{where if circuit.device else ''}{boards}."
+    boards = [] if request.boards == 1 else [f"{request.boards} boards"]
+    told = [f"{request.circuit.title} of {wishes}", *place_texts(request.circuit), *boards]
+    return f"{', '.join(told)}."
 
 
 def _wish_text(target: Target, request: Request) -> str:
     """Say what is wanted of an output, and what is accepted."""
-    low, high = (output_text(target.output, end, digits=6) for end in target.band(request.within))
-    if target.frequency is not None:
-        asked = quantities.format_frequency(target.frequency)
-        return f"{asked} within {quantities.format_percent(request.within)} ({low} to {high})"
     if target.is_free:
         return "any duty"
-    name = "" if target.output == request.circuit.outputs[0] else f"{target.output} "
+    chief = target.output == request.circuit.outputs[0]
+    name = "" if chief else f"{output_name(target.output, target.called)} "
     if target.is_range:
-        return f"{name}{low} to {high}"
-    wanted = output_text(target.output, target.low)
-    band = quantities.format_percent(request.within)
-    return f"{name}{wanted} within {band} ({low} to {high})"
+        return f"{name}{wanted_text(target)}"
+    within = quantities.format_percent(request.within)
+    return f"{name}{wanted_text(target)} within {within} ({accepted_text(target, request.within)})"
 
 
 @dataclass(frozen=True, slots=True)
@@ -168,11 +177,22 @@ def _letter(number: int) -> str:
     return name if number < 26 else _letter(number // 26 - 1) + name  # noqa: PLR2004
 
 
-def _headings(answer: Answer) -> tuple[str, ...]:
-    outputs = [_shown_output(target) for target in answer.request.targets]
-    if answer.request.circuit.variants[0].name:
-        outputs.append("output")
-    return ("fit", *outputs, "error", "parts", "in the band", "worst case", "watch")
+def _columns(request: Request) -> list[tuple[str, str]]:
+    """Return the outputs that have a column, each with its heading."""
+    columns = [
+        (output_name(shown_output(target), target.called), shown_output(target))
+        for target in request.targets
+    ]
+    # Two resistors choose the duty; of one it is what the device makes it.
+    if len(request.circuit.resistors) == 1 and "duty" in request.circuit.outputs:
+        columns.append(("duty", "duty"))
+    return columns
+
+
+def _headings(request: Request) -> tuple[str, ...]:
+    taken = ("output",) if request.circuit.variants[0].name else ()
+    names = [heading for heading, _ in _columns(request)]
+    return ("fit", *names, *taken, "error", "parts", "in the band", "worst case", "watch")
 
 
 def _row(number: int, fit: Fit, request: Request, notes: dict[Code, _Note]) -> list[str]:
@@ -182,10 +202,7 @@ def _row(number: int, fit: Fit, request: Request, notes: dict[Code, _Note]) -> l
         mark += f" +{len(fit.cautions) - 1}"
     return [
         str(number),
-        *(
-            output_text(output, out.of(output).nominal, digits=4)
-            for output in map(_shown_output, request.targets)
-        ),
+        *(output_text(output, out.of(output).nominal, digits=4) for _, output in _columns(request)),
         *((fit.variant.name,) if fit.variant.name else ()),
         _error_text(fit, _shown_error(fit, request)),
         str(fit.parts),
@@ -198,11 +215,6 @@ def _row(number: int, fit: Fit, request: Request, notes: dict[Code, _Note]) -> l
 def _too_short(fit: Fit) -> bool:
     """Tell whether the timer's own delays rule: then the formula says nothing of the odds."""
     return any(caution.code in TOO_FAST for caution in fit.cautions)
-
-
-def _shown_output(target: Target) -> str:
-    """Return the output that is shown for a target: a frequency where it was asked for."""
-    return target.output if target.frequency is None else "frequency"
 
 
 def _shown_error(fit: Fit, request: Request) -> float:
@@ -234,14 +246,9 @@ def _far_words(fit: Fit) -> tuple[str, str]:
 
 def _worst_case(fit: Fit, request: Request) -> str:
     """Say the ends of every output that was asked for, but for a duty that may be anything."""
-    outputs = [_shown_output(target) for target in request.targets if not target.is_free]
-    return ", ".join(_ends(fit.outlook.of(output)) for output in outputs)
-
-
-def _ends(reading: Reading) -> str:
-    low = output_text(reading.output, reading.low, digits=3) if reading.low > 0 else "stops"
-    high = "never" if reading.high is None else output_text(reading.output, reading.high, digits=3)
-    return f"{low} to {high}"
+    outputs = [shown_output(target) for target in request.targets if not target.is_free]
+    readings = map(fit.outlook.of, outputs)
+    return ", ".join(ends_text(each.output, each.low, each.high) for each in readings)
 
 
 def _folded(
@@ -250,8 +257,10 @@ def _folded(
     """Write the row as a sentence, for terminals too narrow for the table."""
     _, *outputs, error, parts, chance, worst, mark = _row(number, fit, request, notes)
     watch = f", watch {mark}" if mark else ""
+    names = _headings(request)[1 : 1 + len(outputs)]
+    told = ", ".join(f"{name} {text}" for name, text in zip(names, outputs, strict=True))
     text = (
-        f"{number}. {', '.join(outputs)} ({error}), {parts} parts, {chance} in the band, "
+        f"{number}. {told} ({error}), {parts} parts, {chance} in the band, worst case "
         f"{worst}{watch}"
     )
     return wrapped(text, width, hanging=INDENT)
@@ -297,9 +306,16 @@ def _pick_text(holding: Holding, count: int) -> str:
 
 
 def _nothing(answer: Answer) -> str:
+    request = answer.request
+    boards = f" for all {request.boards} boards" if request.boards > 1 else ""
     if not answer.fits:
-        return "Nothing in this stock makes such an interval."
-    return "Nothing in this stock lies in the accepted band; these come nearest."
+        chief = request.circuit.outputs[0]
+        return f"Nothing in this stock makes such {_with_article(chief)}{boards}."
+    return f"Nothing in this stock lies in the accepted band{boards}; these come nearest."
+
+
+def _with_article(noun: str) -> str:
+    return f"{'an' if noun[0] in 'aeiou' else 'a'} {noun}"
 
 
 def _searched(answer: Answer) -> str:
@@ -307,5 +323,13 @@ def _searched(answer: Answer) -> str:
     if not searched.combinations:
         return "There was nothing to search."
     noun = "circuit" if searched.combinations == 1 else "circuits"
+    count, time = _count(searched.combinations), f"{searched.seconds:.2g} s"
+    if searched.limit and answer.request.rank is Rank.BALANCED:
+        return f"Of {count} possible {noun} the nearest were weighed in {time}: {searched.limit}."
     how = searched.limit or "exact: no circuit of the space is better placed"
-    return f"Searched {searched.combinations:,} {noun} in {searched.seconds:.2g} s; {how}."
+    return f"Searched {count} {noun} in {time}; {how}."
+
+
+def _count(number: int) -> str:
+    """Write a number of circuits; of very many two digits are enough."""
+    return f"{number:,}" if number < MANY else f"{number:.1e}".replace("e+", "e")

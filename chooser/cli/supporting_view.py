@@ -6,12 +6,14 @@ from typing import Any
 
 from chooser.cli.stock_view import describe
 from chooser.cli.tables import table_lines
-from chooser.cli.words import wrapped
+from chooser.cli.words import fitted, wrapped
 from chooser.parts import Kind
 from chooser.quantities import format_current
 from chooser.supporting.needs import Need
 from chooser.supporting.picking import Picked, Supporting
 
+INDENT = " " * 8
+"""As far in as the cells of a folded row stand."""
 HEADINGS = ("for", "part", "drawer", "why")
 
 
@@ -27,7 +29,8 @@ def supporting_lines(supporting: Supporting | None, width: int | None) -> list[s
     lines = ["With fit 1:"]
     if supporting.picks:
         rows = [_row(pick) for pick in supporting.picks]
-        lines += table_lines(HEADINGS, rows, width=width, wrapping="why")
+        table = table_lines(HEADINGS, rows, width=width, wrapping="why")
+        lines += fitted(table, width, INDENT)
     for text in (*map(missing_text, supporting.missing), *supporting.cautions):
         lines += wrapped(text, width)
     return [*lines, ""]

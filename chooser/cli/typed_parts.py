@@ -8,6 +8,7 @@ from __future__ import annotations
 
 import re
 from collections.abc import Callable, Iterable, Iterator
+from contextlib import suppress
 from itertools import count
 
 from chooser.causes import kind_in
@@ -17,6 +18,7 @@ from chooser.cli.stock_view import describe
 from chooser.errors import BadRequestError, ChooserError, UnreadableValueError
 from chooser.networks import Leaf, Network, members, parse_network
 from chooser.parts import Count, Holding, Kind, Sureness
+from chooser.quantities import parse_capacitance, parse_resistance
 
 LONGEST = 500
 """Characters of what is typed into a slot."""
@@ -63,7 +65,7 @@ def read_slot(
             f"--{slot}: {len(text)} characters are no network; write one like 10k + (22k || 47k)."
         )
     ids = count(-1 - circuit.slots.index(slot), -len(circuit.slots))
-    return _Reader(text, slot, kind_in(slot), ids, stock).network()
+    return _Reader(text, slot, circuit, ids, stock).network()
 
 
 class _Reader:
@@ -73,13 +75,14 @@ class _Reader:
         self,
         text: str,
         slot: str,
-        kind: Kind,
+        circuit: Circuit,
         ids: Iterator[int],
         stock: Callable[[], Iterable[Holding]],
     ) -> None:
         self.text = text
         self.slot = slot
-        self.kind = kind
+        self.kind = kind_in(slot)
+        self.has_both = circuit.capacitor and bool(circuit.resistors)
         self.ids = ids
         self.stock = stock
 
@@ -130,19 +133,28 @@ class _Reader:
 
     def _refused(self, error: ChooserError) -> BadRequestError:
         """Say in one sentence, with the slot and the whole text, what another reader found."""
-        where = f"--{self.slot} {self.text!r}"
-        sentence = str(error).replace(_NO_JOIN, "+").replace("\n", " ")
-        for seen in (self.text, self.text.strip()):
-            if sentence.startswith(f"{seen!r} "):
-                return BadRequestError(f"{where}: {sentence.removeprefix(f'{seen!r} ')}")
-        return BadRequestError(f"{where}: {sentence}")
+        swapped = "" if not isinstance(error, UnreadableValueError) else self._swapped(error)
+        sentence = (swapped or str(error)).replace(_NO_JOIN, "+").replace("\n", " ")
+        if any(sentence.startswith(f"{seen!r} ") for seen in (self.text, self.text.strip())):
+            return BadRequestError(f"--{self.slot}: {sentence}")
+        return BadRequestError(f"--{self.slot} {self.text!r}: {sentence}")
+
+    def _swapped(self, error: UnreadableValueError) -> str:
+        """Ask whether a value of the other kind belongs into the other slot; "" if it is none."""
+        mine, other, parse = ("resistance", "capacitance", parse_capacitance)
+        if self.kind is Kind.CAPACITOR:
+            mine, other, parse = ("capacitance", "resistance", parse_resistance)
+        if not self.has_both or not error.problem.startswith((f"is not a {mine}", f"is a {other}")):
+            return ""
+        with suppress(UnreadableValueError):
+            parse(error.text)
+            resistors = self.slot if self.kind is Kind.RESISTOR else "R"
+            return f"{error.text!r} is a {other}, not a {mine}; are {resistors} and C swapped?"
+        return ""
 
     def _wrong(self, seen: str, problem: str) -> BadRequestError:
-        return BadRequestError(
-            f"--{self.slot} {self.text!r}: {problem}."
-            if seen == self.text.strip()
-            else f"--{self.slot} {self.text!r}: {seen!r} {problem}."
-        )
+        whole = "" if seen == self.text.strip() else f" {self.text!r}"
+        return BadRequestError(f"--{self.slot}{whole}: {seen!r} {problem}.")
 
 
 def _unjoined(match: re.Match[str]) -> str:

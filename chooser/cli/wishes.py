@@ -3,15 +3,16 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING, Any, TypeVar
 
-from chooser.errors import BadRequestError
+from chooser.errors import BadRequestError, UnreadableValueError
 
 if TYPE_CHECKING:
     from chooser.circuits.circuit import Circuit
     from chooser.search.request import Target
 
 Options = Mapping[str, Any]
+V = TypeVar("V")
 
 BELOW_HALF = (
     "steer the charging with a diode (`fit steered`), or hang the load between output "
@@ -19,26 +20,75 @@ BELOW_HALF = (
 )
 
 
-def interval_targets(options: Options, circuit: Circuit) -> tuple[Target, ...]:
-    """Return the one interval that is wanted; none where nothing was said (of a check)."""
-    from chooser.quantities import format_duration, is_range, parse_duration
-    from chooser.search.request import Target
+FASTEST = 1e-6
+"""Second; common practice, no source: below it the delays of all the chips here rule."""
 
-    text = options["target"]
-    if text is None:
-        return ()
+
+def read_option(options: Options, name: str, parse: Callable[[str], V]) -> V:
+    """Read the value of an option.
+
+    Raises
+    ------
+    BadRequestError
+        It is no such value; the sentence names the option.
+    """
+    try:
+        return parse(options[name])
+    except UnreadableValueError as error:
+        raise BadRequestError(f"{_flag(options, name)}: {error}") from error
+
+
+def _flag(options: Options, name: str) -> str:
+    """Return how an option is typed; what a fit is of is typed without."""
+    return "TARGET" if name == "target" and options["fits"] else f"--{name}"
+
+
+def _one(
+    options: Options, name: str, parse: Callable[[str], float], what: str, example: str
+) -> float:
+    """Read the one value that is wanted; a range of them is told apart from what is no value."""
+    from chooser.quantities import is_range
+
+    text = options[name]
     if is_range(text):
         raise BadRequestError(
-            f"{text!r} is a range; name the one interval that is wanted, such as 30s."
+            f"{_flag(options, name)}: {text!r} is a range; name the one {what} that is wanted, "
+            f"such as {example}."
         )
-    wanted = parse_duration(text)
+    return read_option(options, name, parse)
+
+
+def interval_targets(options: Options, circuit: Circuit) -> tuple[Target, ...]:
+    """Return the one interval that is wanted; none where nothing was said (of a check)."""
+    from chooser.quantities import format_duration, parse_duration
+    from chooser.search.request import Target
+
+    if options["target"] is None:
+        return ()
+    wanted = _one(options, "target", parse_duration, "interval", "30s")
     if options["fits"] and wanted < circuit.shortest:
-        raise BadRequestError(
-            f"The {circuit.device} cannot make {format_duration(wanted)}: its own delays rule "
-            f"below {format_duration(circuit.shortest, digits=3)}; take a faster one "
-            "(--timer cmos), or a logic one-shot (`fit logic-monostable`)."
-        )
+        said = f"make {format_duration(wanted)}"
+        raise _too_fast(circuit, wanted, said, "a logic one-shot (`fit logic-monostable`)")
     return (Target("interval", wanted, wanted),)
+
+
+def _too_fast(circuit: Circuit, wanted: float, what: str, instead: str) -> BadRequestError:
+    """Say why a circuit cannot be so fast, and what can."""
+    from chooser.cautions import SMALL_CURRENT
+    from chooser.quantities import format_duration
+
+    if wanted < FASTEST:
+        return BadRequestError(
+            f"The {circuit.device} cannot {what}: below about {format_duration(FASTEST)} that is "
+            "too fast for any RC circuit of these chips; take fast gates, or a crystal."
+        )
+    timer = circuit.timer
+    bipolar = timer is not None and timer.threshold_current_limit > SMALL_CURRENT
+    return BadRequestError(
+        f"The {circuit.device} cannot {what}: its own delays rule below "
+        f"{format_duration(circuit.shortest, digits=3)}; take "
+        f"{'a faster one (--timer cmos), or ' if bipolar else ''}{instead}."
+    )
 
 
 def value_targets(output: str) -> Callable[[Options, Circuit], tuple[Target, ...]]:
@@ -50,8 +100,9 @@ def value_targets(output: str) -> Callable[[Options, Circuit], tuple[Target, ...
 
         if options["target"] is None:
             return ()
-        parse = parse_resistance if output == "resistance" else parse_capacitance
-        wanted = parse(options["target"])
+        plain = output == "resistance"
+        parse, example = (parse_resistance, "14k25") if plain else (parse_capacitance, "320n")
+        wanted = _one(options, "target", parse, output, example)
         return (Target(output, wanted, wanted),)
 
     return targets
@@ -108,56 +159,64 @@ def _two_times(options: Options) -> tuple[Target, ...]:
     from chooser.quantities import parse_duration
     from chooser.search.request import Target
 
-    first, second = ("high", "low") if _any(options, "high", "low") else ("on", "off")
+    by_level = _any(options, "high", "low")
+    first, second = ("high", "low") if by_level else ("on", "off")
     for one, other in ((first, second), (second, first)):
         if options[one] is None:
             raise BadRequestError(
                 f"--{other} alone does not say how long the {one} time is; add --{one}."
             )
-    times = [parse_duration(options[name]) for name in (first, second)]
-    if first == "on" and options["active"] == "low":
-        times.reverse()
-    return tuple(
-        Target(name, time, time) for name, time in zip(("high", "low"), times, strict=True)
-    )
+    names = [first, second]
+    if not by_level and options["active"] == "low":
+        names.reverse()
+    found = []
+    for level, name in zip(("high", "low"), names, strict=True):
+        time = _one(options, name, parse_duration, "time", "2s")
+        found.append(Target(level, time, time, called="" if by_level else name))
+    return tuple(found)
 
 
 def _period(options: Options, circuit: Circuit) -> Target | None:
     """Return the target that a frequency or a period makes; a frequency ranks as its period."""
-    from chooser.quantities import format_duration, parse_duration, parse_frequency
+    from chooser.quantities import (
+        format_duration,
+        format_frequency,
+        parse_duration,
+        parse_frequency,
+    )
     from chooser.search.request import Target
 
     if options["frequency"] is not None and options["period"] is not None:
         raise BadRequestError("--frequency and --period say the same; leave one out.")
     if options["frequency"] is not None:
-        hertz = parse_frequency(options["frequency"])
-        period, asked = 1.0 / hertz, hertz
+        hertz = _one(options, "frequency", parse_frequency, "frequency", "440Hz")
+        target, said = Target("period", 1.0 / hertz, 1.0 / hertz, hertz), format_frequency(hertz)
     elif options["period"] is not None:
-        period, asked = parse_duration(options["period"]), None
+        period = _one(options, "period", parse_duration, "period", "2ms")
+        target = Target("period", period, period)
+        said = f"a period of {format_duration(period)}"
     else:
         return None
-    if options["fits"] and period < circuit.shortest:
-        raise BadRequestError(
-            f"The {circuit.device} cannot oscillate so fast: its own delays rule below "
-            f"{format_duration(circuit.shortest, digits=3)}; take a faster one (--timer cmos), or "
-            "a Schmitt inverter (`fit schmitt`)."
-        )
-    return Target("period", period, period, asked)
+    if options["fits"] and target.low < circuit.shortest:
+        what = f"oscillate {'with' if target.frequency is None else 'at'} {said}"
+        raise _too_fast(circuit, target.low, what, "a Schmitt inverter (`fit schmitt`)")
+    return target
 
 
 def _period_and_duty(options: Options, circuit: Circuit) -> tuple[Target, ...]:
     from chooser.search.request import ANY_DUTY, Target
 
     period = _period(options, circuit)
+    if options["duty"] is not None:
+        duty = Target("duty", *read_option(options, "duty", _duty))
+        if period is not None:
+            return (period, duty)
+        if not options["fits"]:
+            return (duty,)
     if period is None:
         raise BadRequestError("--duty alone does not say how fast; add --frequency or --period.")
-    if options["duty"] is None:
-        # Any duty will do that the circuit can have.
-        return (
-            (period,) if not options["fits"] else (period, Target("duty", ANY_DUTY, 1 - ANY_DUTY))
-        )
-    low, high = _duty(options["duty"])
-    return (period, Target("duty", low, high))
+    # Any duty will do that the circuit can have.
+    return (period,) if not options["fits"] else (period, Target("duty", ANY_DUTY, 1 - ANY_DUTY))
 
 
 def _duty(text: str) -> tuple[float, float]:

@@ -3,7 +3,9 @@
 from __future__ import annotations
 
 import json
+import math
 import re
+from dataclasses import replace
 from itertools import pairwise
 
 import pytest
@@ -13,13 +15,14 @@ from chooser.circuits.astable import astable
 from chooser.circuits.circuit import Variant
 from chooser.circuits.counter import counter
 from chooser.circuits.counters import counter_named
+from chooser.circuits.delay import delay
 from chooser.circuits.monostable import monostable
 from chooser.circuits.plain import capacitance, resistance
 from chooser.circuits.timers import timer_named
 from chooser.cli.check_view import print_verdict, verdict_lines
 from chooser.cli.quick_entry import read_part
 from chooser.cli.typed_parts import read_slot
-from chooser.parts import Count, Holding
+from chooser.parts import Count, Holding, Tolerance
 from chooser.search.request import Target
 from chooser.temperature import Warmth
 from chooser.verdict import judged
@@ -83,7 +86,7 @@ class TestThePage:
     def test_leakage_in_words(self):
         out = page(*SLOW)
         assert re.search(r"charging current is 2\.7 times what leaks", out)
-        assert "high time 30% longer, at the limits endless" in out
+        assert "high time 30% longer, at the limits endless." in out
         assert "may-never-end: " in out
         assert "10M meter on the timing node" in out
 
@@ -100,6 +103,11 @@ class TestThePage:
         out = page(astable(IDEAL, 9.0), ("10k 1%", "10k 1%", "100n 5% polyester"))
         # 20 k x 100 n x ln 3 = 2.197 ms.
         assert "The first high time after power-up is longer: 2.2 ms (" in out
+        wanted = (Target("high", 1e-3, 1e-3, called="off"), Target("low", 1e-3, 1e-3, called="on"))
+        out = page(astable(IDEAL, 9.0), ("10k 1%", "10k 1%", "100n 5% polyester"), wanted)
+        assert "The first off time (high) after power-up is longer: 2.2 ms (" in out
+        assert "Off (high): +39% off, where 1 ms was wanted" in out
+        assert re.search(r"^on \(low\) +693 us", out, re.MULTILINE)
         assert "after power-up" not in page(*USUAL)
 
     def test_temperature_at_both_ends_and_over_both(self):
@@ -112,6 +120,8 @@ class TestThePage:
         single = page(*USUAL, warmth=Warmth(25.0, 25.0))
         assert "25 C" in single
         assert "both" not in single
+        assert single.count("(parts are specified at 20 C).") == 1
+        assert "specified" not in out
 
     def test_a_dielectric_outside_its_rating(self):
         # EIA RS-198: Z5U is for +10 to +85 C.
@@ -172,21 +182,66 @@ class TestThePage:
         )
         assert "Period: never, not 1 h" in out
         assert "stops" in out
-        assert "stuck" in out
+        assert "stuck" not in out
         assert "nan" not in out
         assert "inf" not in out
+
+    def test_what_never_ends_is_told_once_and_what_it_would_make(self):
+        # (51 k + 2 x 470) x 0.1 F x ln 2 = 3600.2 s.
+        texts = ("51k", "470", "100000u electrolytic 16V")
+        out = page(astable(BIPOLAR, 9.0), texts, at_supply=lambda volt: astable(BIPOLAR, volt))
+        assert "Without any losses it would make a period of 1 h." in out
+        assert "that makes the high time endless.\n" in out
+        for noise in ("The first", "meter", "One volt more"):
+            assert noise not in out
+        rows = {line.split()[0]: line.split()[1] for line in out.splitlines()[6:11]}
+        assert rows == {
+            "period": "never",
+            "frequency": "stops",
+            "high": "never",
+            "low": "33.3",
+            "duty": "stops",
+        }
+        # 10 Mohm x 1 mF x ln 3 = 10,986 s, which is 11,000 s in three digits.
+        out = page(monostable(CMOS, 9.0), ("10M", "1000u electrolytic 16V"))
+        assert "Without any losses it would make 3 h 03 min 20 s." in out
+        assert "Without any losses" not in page(*SLOW)
+
+    def test_a_meter_that_changes_no_digit_is_not_spoken_of(self):
+        assert "meter" not in page(monostable(CMOS, 9.0), ("1k", "10u 10% polyester"))
+
+    def test_the_setting_stands_behind_the_supply(self):
+        circuit = replace(monostable(CMOS, 9.0), setting="control pin at 4 V")
+        out = page(circuit, ("10k", "1u polyester"))
+        assert out.startswith("One-shot, cmos timer at 9 V, control pin at 4 V.\n")
+        circuit = replace(delay(5.0, 0.5, Tolerance(0.0, 0.0)), setting="threshold 50%")
+        assert page(circuit, ("10k", "1u polyester")).startswith(
+            "RC delay, at 5 V, threshold 50%.\n"
+        )
+
+    def test_a_frequency_is_compared_as_one(self):
+        # 20 k + 10 k, 100 nF, ln 2: 480.9 Hz; asked 440 Hz, to 2 % of the period.
+        texts = ("10k 1%", "10k 1%", "100n 5% polyester")
+        out = page(astable(IDEAL, 9.0), texts, (Target("period", 1 / 440, 1 / 440, 440.0),))
+        assert (
+            "Frequency: +9.3% off, where 440 Hz was wanted (431.373 Hz to 448.98 Hz accepted)."
+        ) in out
+        out = page(astable(IDEAL, 9.0), texts, (Target("period", 1e-7, 1e-7, 1e7),))
+        assert "Frequency: 21,000 x too low: 481 Hz, not 10 MHz." in out
 
     def test_the_output_of_a_counter_is_named(self):
         circuit = counter(counter_named("HEF4060B"), 5.0)
         out = page(circuit, ("100k", "470n polyester"), variant=circuit.variants[-1])
-        assert out.splitlines()[0] == "Oscillator and counter, HEF4060B at 5 V, output Q14 (pin 3)."
+        heading = out.splitlines()[0]
+        assert heading.startswith("Oscillator and counter, HEF4060B at 5 V, ")
+        assert heading.endswith(", output Q14 (pin 3).")
         assert "meter on the timing node" not in out
 
     def test_plain_networks(self):
         out = page(resistance(), ("10k 1% + 22k 1%",), (Target("resistance", 3.0, 3.0),))
         assert out.splitlines()[0] == "Resistance."
         assert "11,000 x too high: 32k, not 3R" in out
-        assert "Capacitance at 9 V." in page(capacitance(9.0), ("10n 5% c0g",))
+        assert "Capacitance, at 9 V." in page(capacitance(9.0), ("10n 5% c0g",))
 
     @pytest.mark.parametrize("width", [34, 40, 60, 80, 140])
     def test_no_line_is_wider_than_the_terminal(self, width):
@@ -222,11 +277,13 @@ class TestJson:
             "timer",
             "device",
             "supply",
+            "setting",
             "outputs",
             "first",
             "spread",
             "in_band",
             "chance",
+            "likely_miss",
             "slots",
             "causes",
             "leakage",
@@ -252,10 +309,26 @@ class TestJson:
         assert answer["temperature"][0]["moves_most"]["slot"] == "C"
         assert answer["per_volt"] == {"formula": None, "device": 0.03}
 
+    def test_the_likely_miss_is_that_of_the_worst_target(self, capsys):
+        targets = (Target("high", 2e-3, 2e-3), Target("low", 1e-3, 1e-3))
+        texts = ("10k 1%", "10k 1%", "100n 5% polyester")
+        answer = self.answered(capsys, astable(IDEAL, 9.0), texts, targets)
+        # Low: 10 k x 100 nF x ln 2 = 693 us; R 1 % and C 5 % even give one sigma of 2.94 %.
+        miss = math.hypot(1 - math.log(2), math.hypot(0.01, 0.05) / math.sqrt(3))
+        assert answer["likely_miss"] == pytest.approx(miss, rel=1e-9)
+
+    def test_a_counter_says_what_its_output_divides_by(self, capsys):
+        circuit = counter(counter_named("HEF4060B"), 5.0)
+        by_name = {variant.name: variant for variant in circuit.variants}
+        variant = next(each for name, each in by_name.items() if name.startswith("Q14"))
+        answer = self.answered(capsys, circuit, ("100k", "470n polyester"), variant=variant)
+        assert answer["ratio"] == 2**14
+
     def test_chance_and_band_only_where_something_was_wanted(self, capsys):
         answer = self.answered(capsys, *USUAL)
         assert answer["targets"] == {}
         assert "chance" not in answer
+        assert "likely_miss" not in answer
         assert "in_band" not in answer
         assert "error" not in answer["outputs"]["interval"]
 

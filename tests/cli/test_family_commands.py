@@ -205,6 +205,55 @@ def test_on_and_off_of_a_load_to_the_supply_are_low_and_high(sheet):
     assert (fit["outputs"]["low"]["target"], fit["outputs"]["high"]["target"]) == (1.0, 2.0)
 
 
+def test_on_and_off_are_called_so_with_their_level(sheet):
+    words = "fit astable --timer ideal --on 6.93ms --off 22.2ms --active low --stock"
+    lines = run(*words.split(), sheet(*PARTS)).stdout.splitlines()
+    assert lines[0].startswith("Astable of off (high) 22.2 ms within 2% (")
+    assert ", on (low) 6.93 ms within 2% (" in lines[0]
+    assert lines[2].split("  ")[1:3] == ["off (high)", "on (low)"]
+    words = "check astable --RA 22k --RB 10k --C 1u --on 6.93ms --off 22.2ms --active low"
+    out = run(*words.split()).stdout
+    assert "\nOn (low): " in out
+    assert "\noff (high)" in out
+
+
+def test_the_duty_that_one_resistor_leaves_no_choice_of_is_shown(sheet):
+    for words in ("output-fed --timer ideal --period 13.9ms", "schmitt --period 10ms"):
+        out = run("fit", *words.split(), "--stock", sheet(*PARTS)).stdout
+        assert out.splitlines()[2].split()[:3] == ["fit", "period", "duty"]
+    words = "fit astable --timer ideal --high 22ms --low 7ms --stock"
+    assert "duty" not in run(*words.split(), sheet(*PARTS)).stdout.splitlines()[2]
+
+
+def test_a_frequency_is_accepted_by_its_period(sheet):
+    words = "fit output-fed --timer ideal --frequency 100Hz --within 10% --stock"
+    out = run(*words.split(), sheet(*PARTS)).stdout
+    # 100 / 1.1 and 100 / 0.9.
+    assert out.startswith("Output-fed astable of 100 Hz within 10% (90.9091 Hz to 111.111 Hz), ")
+
+
+def test_a_delay_says_its_supply(sheet):
+    words = "fit delay 15.25ms --supply 5V --stock"
+    out = run(*words.split(), sheet(*PARTS)).stdout
+    assert ", at 5 V" in out.splitlines()[0]
+
+
+def test_a_counter_says_what_its_output_divides_by():
+    answer = answered("fit", "counter", "1h", "--stock", SAMPLE, "--top", "3")
+    for fit in answer["fits"]:
+        stages = int(fit["output"].split()[0].removeprefix("Q"))
+        assert fit["ratio"] == 2**stages
+        period = fit["oscillator"]["period"]
+        assert fit["outputs"]["interval"]["nominal"] == pytest.approx(period * fit["ratio"] / 2)
+
+
+def test_a_check_may_compare_a_duty_alone():
+    words = "check astable --RA 10k --RB 10k --C 1u --duty 10%"
+    answer = answered(*words.split())
+    assert answer["targets"] == {"duty": 0.1}
+    assert answer["in_band"] is False
+
+
 def test_counts_are_shared_between_the_slots(sheet):
     """The one 10k there is cannot be RA and RB: some other part must take a place."""
     stock = sheet(

@@ -6,6 +6,7 @@ import json
 import math
 import os
 import pty
+import re
 import subprocess
 import sys
 from pathlib import Path
@@ -72,6 +73,22 @@ class TestTheTable:
         done = fit("90s", "--stock", SAMPLE, "--rank", "count")
         assert "exact: no circuit of the space is better placed" in done.stdout
         assert "class-2-ceramic: 7 capacitor holdings of ceramic left out" in done.stdout
+
+    def test_an_order_that_weighs_the_nearest_does_not_claim_more(self):
+        out = fit("90s", "--stock", SAMPLE).stdout
+        assert "possible circuits the nearest were weighed in " in out
+        assert "Searched" not in out
+        assert re.search(r"^Of [\d,]+ possible circuits", out, re.MULTILINE)
+        wide = CliRunner().invoke(
+            app, ["fit", "astable", "--frequency", "440Hz", "--stock", SAMPLE]
+        )
+        assert re.search(r"^Of 1\.4e18 possible circuits", wide.stdout, re.MULTILINE)
+
+    def test_many_boards_are_named_where_the_stock_cannot_make_them_all(self, sheet):
+        stock = sheet("resistor,820k,3,A4,1%,metal-film,,", "capacitor,100u,2,F2,20%,tantalum,25V,")
+        done = fit("90s", "--stock", stock, "--timer", "ideal", "--boards", "20")
+        assert "Nothing in this stock makes such an interval for all 20 boards." in done.stdout
+        assert "The stock is enough for 2 boards" in done.stdout
 
     def test_reasons_on_request(self):
         assert "before the next:" not in fit("90s", "--stock", SAMPLE).stdout
@@ -241,6 +258,9 @@ class TestTerminals:
         assert "\x1b" not in out
         assert "…" not in out
         assert out.count("C = ") == 4
+        if columns == 60:
+            assert out.startswith("One-shot of 90 s within 2%")
+            assert "1. interval " in out
 
     def test_a_pipe_gets_whole_lines(self):
         done = subprocess.run(

@@ -91,14 +91,19 @@ class TestThePage:
 
     def test_narrow_terminals_get_it_too(self):
         from chooser.cli.supporting_view import supporting_lines  # as no terminal is at hand
-        from chooser.parts import Kind
+        from chooser.parts import Count, Holding, Kind, Part
         from chooser.supporting.needs import Need
-        from chooser.supporting.picking import Supporting
+        from chooser.supporting.picking import Picked, Supporting
 
         need = Need("pull-up", Kind.RESISTOR, 4.7e3, 10e3, 22e3, "why")
         lines = supporting_lines(Supporting((), (need,)), 24)
         assert all(len(line) <= 24 for line in lines)
         assert " ".join(lines).strip() == "With fit 1: No pull-up in stock: 4k7 to 22k."
+        part = Part(Kind.RESISTOR, 10e3, "10k", technology="carbon-film", power=0.25)
+        pick = Picked(need, Holding(1, part, "A3", Count(5)), 1)
+        lines = supporting_lines(Supporting((pick,), ()), 30)
+        assert all(len(line) <= 30 for line in lines)
+        assert {"carbon-film", "resistor", "A3", "why"} <= set(" ".join(lines).split())
 
 
 class TestJson:

@@ -10,6 +10,7 @@ from hypothesis import strategies as st
 
 from chooser.circuits.astable import astable
 from chooser.circuits.monostable import monostable
+from chooser.circuits.plain import resistance
 from chooser.circuits.timers import timer_named
 from chooser.cli.quick_entry import read_part
 from chooser.cli.typed_parts import read_slot
@@ -122,13 +123,15 @@ def test_trouble_with_the_stock_passes_through():
 @pytest.mark.parametrize(
     ("slot", "text", "words"),
     [
-        ("C", "100", ["--C '100':", "10p or 100p"]),
-        ("C", "1000", ["--C '1000': has no unit", "1000p or 1000n"]),
-        ("R", "lk5", ["--R 'lk5':", "perhaps 1k5"]),
+        ("C", "100", ["--C: '100' ", "10p or 100p"]),
+        ("C", "1000", ["--C: '1000' has no unit", "1000p or 1000n"]),
+        ("R", "lk5", ["--R: 'lk5' ", "perhaps 1k5"]),
         ("R", "10m + 4k7", ["--R '10m + 4k7': '10m'", "10M"]),
-        ("R", "10kk", ["--R '10kk': is not a resistance"]),
-        ("R", "100n", ["is a capacitance, not a resistance"]),
-        ("R", "", ["--R '': holds no value"]),
+        ("R", "10kk", ["--R: '10kk' is not a resistance"]),
+        ("R", "100n", ["--R: '100n' is a capacitance, not a resistance; are R and C swapped?"]),
+        ("R", "10k + 100n 5%", ["--R '10k + 100n 5%': '100n' is a", "are R and C swapped?"]),
+        ("C", "10k5", ["--C: '10k5' is a resistance, not", "are R and C swapped?"]),
+        ("R", "", ["--R: '' holds no value"]),
         ("R", "10k + ", ["lacks a part between its signs"]),
         ("R", "(10k", ["lacks a closing bracket"]),
         ("R", "10k + 22k || 47k", ["without brackets", "(10k + 22k) || 47k"]),
@@ -137,7 +140,7 @@ def test_trouble_with_the_stock_passes_through():
         ("R", "10k measured", ["without a figure"]),
         ("C", "100u 5% electrolitic", ["did you mean electrolytic"]),
         ("R", "10k pot", ["called a resistor and a pot"]),
-        ("R", "#99", ["--R '#99': is not in the stock", "chooser stock list"]),
+        ("R", "#99", ["--R: '#99' is not in the stock", "chooser stock list"]),
         ("R", "10k + #99", ["--R '10k + #99': '#99' is not in the stock"]),
         ("R", "#1 7", ["is no holding", "#17"]),
         ("R", "#", ["is no holding"]),
@@ -155,7 +158,17 @@ def test_what_is_wrong_is_said_in_one_sentence_with_the_slot(slot, text, words):
     assert said.startswith(f"--{slot}")
     assert all(word in said for word in words), said
     assert "\n" not in said
-    assert said.endswith(".")
+    assert said.endswith((".", "?"))
+
+
+def test_a_slot_alone_cannot_be_swapped_and_two_resistors_are_told_apart():
+    for circuit, slot, says in (
+        (resistance(), "R", "write it like 4k7"),
+        (TWIN, "RB", "are RB and C swapped?"),
+    ):
+        with pytest.raises(BadRequestError, match="is a capacitance, not a resistance") as refused:
+            read_slot("47u", slot, circuit, no_stock)
+        assert says in str(refused.value)
 
 
 @given(st.text() | st.text("0123456789.,kMRnupFVW% +-/±ohm#()|"))

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import shlex
+
 import pytest
 from typer.testing import CliRunner
 
@@ -85,6 +87,21 @@ def test_a_frequency_alone_leaves_the_duty_free_but_remembers_what_was_said():
     assert (period.output, period.low, period.frequency) == ("period", 2e-3, None)
 
 
+def test_on_and_off_are_remembered_with_their_levels():
+    for active, called in (("high", ["on", "off"]), ("low", ["off", "on"])):
+        targets = high_low_targets(options(on="1s", off="1s", active=active), STEERED)
+        assert [(each.output, each.called) for each in targets] == [
+            ("high", called[0]),
+            ("low", called[1]),
+        ]
+    assert {t.called for t in high_low_targets(options(high="1s", low="1s"), STEERED)} == {""}
+
+
+def test_a_check_may_compare_a_duty_alone():
+    (duty,) = high_low_targets(options(fits=False, duty="10%"), PLAIN)
+    assert (duty.output, duty.low, duty.high) == ("duty", 0.1, 0.1)
+
+
 def test_a_forced_trip_point_moves_the_least_duty():
     """By hand: at 7 V of 9 V, high takes ln(5.5/2) and low ln 2 of R C: 59.3 % and more."""
     assert high_low_targets(options(frequency="1kHz", duty="62%"), HELD)
@@ -129,8 +146,17 @@ IMPOSSIBLE = [
     ("astable --frequency 1kHz --duty 40..50%", ["50%", "`fit output-fed`"]),
     # The chip's own delays.
     ("monostable 1us", ["1 us", "delays", "--timer cmos", "`fit logic-monostable`"]),
-    ("astable --frequency 5MHz --duty 60%", ["so fast", "delays", "`fit schmitt`"]),
-    ("output-fed --frequency 5MHz", ["so fast", "delays", "`fit schmitt`"]),
+    (
+        "astable --frequency 300kHz --duty 60%",
+        ["bipolar", "at 300 kHz", "delays", "(--timer cmos), or", "`fit schmitt`"],
+    ),
+    ("astable --period 5us", ["with a period of 5 us", "--timer cmos", "`fit schmitt`"]),
+    ("output-fed --frequency 300kHz", ["at 300 kHz", "delays", "`fit schmitt`"]),
+    ("output-fed --frequency 600kHz --timer cmos", ["take a Schmitt inverter (`fit schmitt`)"]),
+    ("monostable 1.5us --timer cmos", ["take a logic one-shot (`fit logic-monostable`)"]),
+    # No circuit of R and C at all.
+    ("astable --frequency 10MHz", ["10 MHz", "below about 1 us", "too fast for any RC circuit"]),
+    ("monostable 100ns --timer cmos", ["100 ns", "too fast for any RC circuit"]),
     # Supplies and control voltages.
     ("monostable 1s --supply 24V", ["24 V", "4.5", "16 V"]),
     ("astable --frequency 1kHz --supply 1V", ["1 V", "supply"]),
@@ -142,7 +168,10 @@ IMPOSSIBLE = [
     ("astable --frequency 1kHz --control 0.5V", ["500 mV", "control", "1 V"]),
     ("steered --frequency 1kHz --duty 30% --supply 4.5V --diode 2V", ["2 V", "Schottky"]),
     ("delay 1s --supply 5V --threshold 99%", ["99%", "not reached"]),
-    ("delay 1s --supply 5V --threshold 6V", ["120%", "not reached"]),
+    ("delay 1s --supply 5V --threshold 6V", ["--threshold: 6 V", "supply of 5 V"]),
+    ("schmitt --frequency 10kHz --chip 74HC14", ["at 9 V", "(9 V is the default; say --supply)"]),
+    ("schmitt --frequency 1kHz --factor 100", ["--factor: '100' is not believable", "0.02 and 20"]),
+    ("schmitt --frequency 1kHz --factor 0.01", ["--factor: '0.01' is not believable"]),
     (
         "output-fed --frequency 1kHz --timer NE555 --supply 5V --load 100mA",
         ["100 mA", "3.33 V", "stall", "lighten the load"],
@@ -186,7 +215,10 @@ IMPOSSIBLE = [
     ("counter 5s..60s", ["'5s..60s'", "range"]),
     ("delay 0s", ["'0s'", "zero"]),
     ("resistance 100n", ["'100n'", "capacitance, not a resistance"]),
-    ("resistance 1k..2k", ["'1k..2k'"]),
+    ("resistance 1k..2k", ["'1k..2k' is a range", "one resistance", "14k25"]),
+    ("capacitance 1n..2n", ["'1n..2n' is a range", "one capacitance", "320n"]),
+    ("astable --frequency 400Hz..500Hz", ["--frequency: '400Hz..500Hz' is a range", "440Hz"]),
+    ("steered --on 1s..2s --off 3s", ["--on: '1s..2s' is a range"]),
     ("capacitance 100", ["'100'", "100n"]),
 ]
 
@@ -201,6 +233,48 @@ def test_what_cannot_be_gets_a_sentence_with_the_way_out(stock, words, says):
     assert done.stderr.count("\n") == 1
     assert done.stderr.endswith(".\n")
     assert "Traceback" not in done.stderr
+
+
+TYPED_WRONG = [
+    ("astable --frequency fast", "--frequency"),
+    ("astable --period long", "--period"),
+    ("astable --high long --low 1s", "--high"),
+    ("astable --high 1s --low long", "--low"),
+    ("astable --on 1s --off long", "--off"),
+    ("astable --on long --off 1s", "--on"),
+    ("astable --frequency 1kHz --duty half", "--duty"),
+    ("monostable 1s --supply 9bolts", "--supply"),
+    ("monostable 1s --control mid", "--control"),
+    ("monostable 1s --within few", "--within"),
+    ("monostable soon", "TARGET"),
+    ("output-fed --frequency 1kHz --load much", "--load"),
+    ("schmitt --frequency 1kHz --factor usual", "--factor"),
+    ("delay 1s --threshold mid", "--threshold"),
+    ("delay 1s --threshold '2V often'", "--threshold"),
+    ("counter 1h --ratio many", "--ratio"),
+]
+
+
+@pytest.mark.parametrize(("words", "option"), TYPED_WRONG, ids=[words for words, _ in TYPED_WRONG])
+def test_a_wrong_value_names_its_option(stock, words, option):
+    done = CliRunner().invoke(app, ["fit", *shlex.split(words), "--stock", stock])
+    assert done.exit_code == 2
+    assert done.stderr.startswith(f"{option}: '")
+
+
+@pytest.mark.parametrize("option", ["--target", "--temperature", "--within"])
+def test_a_wrong_value_of_a_check_names_its_option(option):
+    words = ["check", "monostable", "--R", "10k", "--C", "1u", option, "much"]
+    done = CliRunner().invoke(app, words)
+    assert done.exit_code == 2
+    assert done.stderr.startswith(f"{option}: 'much' ")
+
+
+def test_a_supply_that_was_typed_is_not_called_the_default(stock):
+    words = "fit schmitt --frequency 10kHz --chip 74HC14 --supply 9V --stock"
+    done = CliRunner().invoke(app, [*words.split(), stock])
+    assert done.exit_code == 2
+    assert "default" not in done.stderr
 
 
 @pytest.mark.parametrize(
