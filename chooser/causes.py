@@ -11,9 +11,8 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from math import inf, sqrt
 
-from chooser.chance import device_law
 from chooser.circuits.circuit import Circuit
-from chooser.interval import Reading, weight_of
+from chooser.interval import Reading
 from chooser.networks import Network, adding_join, tolerance_shares
 from chooser.parts import Holding, Kind
 from chooser.uncertainty import limits_of
@@ -70,9 +69,9 @@ def causes_of(
             own = steep * spread
             rest = variance - whole**2 + (whole - own) ** 2
             found.append(Cause(slot, holding, count, whole * own / variance, _root(rest)))
-    device = weight_of(reading.output) * device_law(circuit.error).spread
-    if device:
-        found.append(Cause("", None, 1, device**2 / variance, _root(variance - device**2)))
+    if reading.device:
+        own = reading.device**2
+        found.append(Cause("", None, 1, own / variance, _root(variance - own)))
     return tuple(sorted(found, key=lambda cause: -cause.share))
 
 

@@ -1,9 +1,11 @@
 """What a circuit does in the cold and in the heat.
 
 Conventions: temperatures in degree Celsius, all parts at the same one; changes are relative to
-20 C. The nominal there has every part moved as is typical and the device not at all; the worst
-case has every part at the end of its tolerance and of its change together, the leak's limit at
-that temperature, and the device's error widened by the greatest usual drift.
+20 C. The nominal there has every part moved as is typical, a steering diode's drop with it, and
+the device not at all; the worst case has every part at the end of its tolerance and of its change
+together, the leak's limit at that temperature, and the device's error widened by the greatest
+usual drift. Left out is what else the device does in the heat: its input and leakage currents,
+which a hot one has more of, its output levels, and thresholds that no drift is printed for.
 """
 
 from __future__ import annotations
@@ -18,6 +20,7 @@ from chooser.causes import kind_in
 from chooser.cautions.record import names
 from chooser.circuits.circuit import Circuit, Variant, outputs_of
 from chooser.circuits.leakage import leak_conductance_at
+from chooser.circuits.steered import with_diode_at
 from chooser.interval import Outlook, outlook
 from chooser.networks import Join, Network, adding_join, members, shares_of, value_of
 from chooser.parts import Holding, Kind, Tolerance
@@ -183,8 +186,9 @@ def _climate(
     drift = circuit.temperature_drift * abs(celsius - REFERENCE_CELSIUS)
     error = Tolerance(min(circuit.error.minus + drift, LARGEST_LOSS), circuit.error.plus + drift)
     rs = [facts[slot] for slot in circuit.resistors]
+    warm = with_diode_at(circuit, celsius)
     there = outlook(
-        replace(circuit, error=error), rs, facts.get("C", NOTHING), {}, scale=variant.scale
+        replace(warm, error=error), rs, facts.get("C", NOTHING), {}, scale=variant.scale
     )
     outside = {
         holding.id: holding
@@ -192,7 +196,9 @@ def _climate(
         for holding in members(networks[slot])
         if outside_rating(holding.part, celsius)
     }
-    movers = [*_movers(circuit, networks, celsius, follows), Mover("", None, -drift, drift)]
+    by_diode = _by_diode(circuit, warm, facts)
+    movers = _movers(circuit, networks, celsius, follows)
+    movers.append(Mover("", None, by_diode - drift, by_diode + drift))
     mover = max(movers, key=lambda each: each.size)
     return Climate(
         celsius,
@@ -213,13 +219,25 @@ def _by_leakage(
         slot: slot_facts(networks[slot], kind_in(slot), circuit.supply, lossless=False)
         for slot in circuit.slots
     }
-    ohms = [cool[slot].value for slot in circuit.resistors]
-    chief = []
-    for leak in (cool["C"].leak_typical, there["C"].leak_typical):
-        with np.errstate(all="ignore"):
-            times = circuit.typical.times(ohms, cool["C"].value, leak)
-            chief.append(float(outputs_of(circuit, times)[circuit.outputs[0]]))
-    return chief[1] / chief[0] - 1.0 if 0.0 < chief[0] < inf else 0.0
+    leaks = (cool["C"].leak_typical, there["C"].leak_typical)
+    before, after = (_chief(circuit, cool, leak) for leak in leaks)
+    return after / before - 1.0 if 0.0 < before < inf else 0.0
+
+
+def _by_diode(circuit: Circuit, warm: Circuit, there: Mapping[str, SlotFacts]) -> float:
+    """Return what a steering diode's drop at a temperature alone does to the chief output."""
+    if warm is circuit:
+        return 0.0
+    before, after = (_chief(each, there, there["C"].leak_typical) for each in (circuit, warm))
+    return after / before - 1.0 if 0.0 < before < inf and after < inf else 0.0
+
+
+def _chief(circuit: Circuit, slots: Mapping[str, SlotFacts], leak: float) -> float:
+    """Return the chief output of slots with a leak across the capacitor."""
+    with np.errstate(all="ignore"):
+        ohms = [slots[slot].value for slot in circuit.resistors]
+        times = circuit.typical.times(ohms, slots["C"].value, leak)
+        return float(outputs_of(circuit, times)[circuit.outputs[0]])
 
 
 def _movers(

@@ -4,19 +4,21 @@ Conventions: the parts of one slot err together (one bag, one maker, one meter),
 arrives here as one value with its ends; the slots and the device err independently. A value
 between its ends counts as equally likely everywhere. The device's own factor is normal to
 either side with a third of its limit as one sigma, cut at that limit: devices beyond it are not
-sold, and sheets that print both figures print 1 % typical beside 3 % at most.
+sold, and sheets that print both figures print 1 % typical beside 3 % at most. Figures of the
+device that change the form of its times (thresholds, output levels) scatter in the same way, as
+`chooser.circuits.scattering` has it.
 """
 
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
-from math import inf, isfinite
+from math import hypot, inf, isfinite
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from chooser.chance import Band, chance_of, device_law
+from chooser.chance import Band, DeviceLaw, chance_of, device_law, scatter_of
 from chooser.circuits.circuit import TIMED, Circuit, outputs_of
 from chooser.parts import Tolerance
 from chooser.slot_facts import SlotFacts
@@ -29,6 +31,8 @@ _LEAKS = np.concatenate([[0.0], 2.0 ** (-np.arange(20) / 2.0)])
 A leak lengthens the charging and shortens the discharging; with low trip points a period first
 falls with it and then rises without end.
 """
+
+_STILL = DeviceLaw(0.0, 0.0)
 
 _STEP = 1e-5  # relative change of a part that tells how an output follows it
 
@@ -45,6 +49,7 @@ class Reading:
     mean : expected, asymmetric tolerances counted.
     spread : one sigma, relative.
     follows : d ln output / d ln value for each slot, the capacitor last.
+    device : the part of the spread that the device alone makes, one sigma, relative.
     """
 
     output: str
@@ -54,6 +59,7 @@ class Reading:
     mean: float
     spread: float
     follows: tuple[float, ...]
+    device: float
 
 
 @dataclass(frozen=True, slots=True)
@@ -98,29 +104,51 @@ def outlook(
     Returns
     -------
     The corners are all combinations of low and high ends of the slots, no leakage and its
-    limit, and the corners of the device; every output is monotone in each of them (of an
-    oscillator's leakage, which may first shorten a period, steps between are looked at as
-    well), so nothing that may happen lies outside.
+    limit, and the corners of the device, its own error on top. Outputs are monotone in the
+    slots, and of an oscillator's leakage, which may first shorten a period, steps between are
+    looked at as well, good to about a percent of that period. The ends hold for parts and
+    devices within their limits and for what the circuit's file counts in: strays, noise and
+    temperature are not in them.
+    Mean and spread are to first order in the parts; a frequency's mean has the second order.
     """
     nominal = _outputs(circuit, [r.value for r in rs], c.value, c.leak_typical, scale)
     ends = _corners(circuit, rs, c, scale)
     slots = (*rs, *((c,) if circuit.capacitor else ()))
     follows = _follows(circuit, rs, c, scale)
-    device = device_law(circuit.error)
-    readings = []
+    scatter = scatter_of(circuit, [r.value for r in rs], c.value, c.leak_typical)
+    found: dict[str, Reading] = {}
     for output in circuit.outputs:
         value = float(nominal[output])
         steep = tuple(float(each[output]) for each in follows)
         if not isfinite(value) or value == 0.0 or not all(map(isfinite, steep)):
-            readings.append(_hopeless(output, value, ends[output], len(slots)))
+            found[output] = _hopeless(output, value, ends[output], len(slots))
             continue
-        through = weight_of(output)
-        mean = mean_of(value, steep, [s.shift for s in slots], through * device.shift)
-        spread = spread_of(steep, [s.spread for s in slots], through * device.spread)
+        device = _device(output, circuit, scatter.get(output, _STILL))
+        mean = float(mean_of(value, steep, [s.shift for s in slots], device.shift))
+        spread = float(spread_of(steep, [s.spread for s in slots], device.spread))
+        if output == "frequency":
+            mean = _mean_frequency(found["period"], mean)
         low, high = ends[output]
         most = high if isfinite(high) else None
-        readings.append(Reading(output, value, low, most, float(mean), float(spread), steep))
-    return Outlook(tuple(readings), chance_of(circuit, rs, c, bands, scale))
+        found[output] = Reading(output, value, low, most, mean, spread, steep, device.spread)
+    return Outlook(tuple(found.values()), chance_of(circuit, rs, c, bands, scale))
+
+
+def _device(output: str, circuit: Circuit, scatter: DeviceLaw) -> DeviceLaw:
+    """Return what the device does to an output, by its own factor and by its figures' scatter."""
+    own, through = device_law(circuit.error), weight_of(output)
+    return DeviceLaw(
+        hypot(through * own.spread, scatter.spread),
+        (1.0 + through * own.shift) * (1.0 + scatter.shift) - 1.0,
+    )
+
+
+def _mean_frequency(period: Reading, first_order: float) -> float:
+    """Return the mean of 1 / T: to second order it is (1 + sigma^2) / mean of T."""
+    if not isfinite(period.mean):
+        return first_order
+    sigma = period.spread * period.nominal / period.mean
+    return (1.0 + sigma**2) / period.mean
 
 
 def weight_of(output: str) -> int:
@@ -203,6 +231,7 @@ def _corners(
     """Return the least and the most of every output over all corners."""
     ends = [(slot.low, slot.high) for slot in (*rs, c)]
     leaks = c.leak_limit * (_LEAKS if len(circuit.outputs) > 1 else _LEAKS[:2])
+    leaks = leaks if c.leak_limit else leaks[:1]
     corners = [axis.ravel() for axis in np.meshgrid(*ends, leaks, indexing="ij")]
     values, farad, leak = corners[:-2], corners[-2], corners[-1]
     found: dict[str, tuple[float, float]] = {}
@@ -250,4 +279,4 @@ def _follows(
 def _hopeless(output: str, value: float, ends: tuple[float, float], slots: int) -> Reading:
     """Return the reading of a time that never ends, hardly ends, or never starts."""
     high = ends[1] if isfinite(ends[1]) and isfinite(value) else None
-    return Reading(output, value, ends[0], high, inf, inf, (1.0,) * slots)
+    return Reading(output, value, ends[0], high, inf, inf, (1.0,) * slots, 0.0)

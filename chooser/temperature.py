@@ -16,12 +16,10 @@ lines. How parts of one slot combine is the same as for tolerances: they move to
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from dataclasses import dataclass
 
 from chooser.errors import BadRequestError
-from chooser.networks import Network, adding_join, value_of
-from chooser.parts import Holding, Kind, Part
+from chooser.parts import Kind, Part
 from chooser.technologies import taken_for, technology_of
 
 REFERENCE_CELSIUS = 20.0
@@ -266,35 +264,6 @@ def outside_rating(part: Part, celsius: float) -> bool:
     """
     behaviour = behaviour_of(part)
     return not behaviour.coldest <= celsius <= behaviour.hottest
-
-
-def network_change(network: Network[Holding], kind: Kind, celsius: float) -> Change:
-    """Return how far a network's value moves when all its parts are at a temperature.
-
-    Parameters
-    ----------
-    network : what fills a slot. kind : the kind of its parts.
-    celsius : temperature in degree Celsius.
-
-    Returns
-    -------
-    Fractions of the network's value at 20 C. The ends are exact: the value rises with each part,
-    and parts of a slot are taken to err together, as with tolerances.
-    """
-    adds = adding_join(kind)
-    nominal = value_of(network, adds, lambda holding: holding.part.effective)
-
-    def relative(end: Callable[[Change], float]) -> float:
-        def warmed(holding: Holding) -> float:
-            return holding.part.effective * (1 + end(change_of(holding.part, celsius)))
-
-        return value_of(network, adds, warmed) / nominal - 1
-
-    least = relative(lambda change: change.least)
-    typical = relative(lambda change: change.typical)
-    most = relative(lambda change: change.most)
-    # Rounding may turn three equal changes by a unit in the last place.
-    return Change(min(least, typical), typical, max(typical, most))
 
 
 KELVIN_PER_DOUBLING = 10.0

@@ -41,8 +41,8 @@ class First:
     output : the output it is the first of. nominal : in second, at typical figures.
     low, high : worst case in second; None for one that may never end. They are those of the
         later times, lengthened as a circuit without losses is. Losses lengthen the first time a
-        little less, so of a timer nothing that may happen lies outside; where the thresholds
-        themselves scatter widely it is an estimate.
+        little less, so of a timer they are on the safe side; where thresholds or levels of the
+        device scatter, they are an estimate.
     """
 
     output: str
@@ -73,7 +73,8 @@ class Leakage:
     ----------
     output : the time in which the capacitor is charged.
     ratio, ratio_limit : charging current at the trip point over all losses there, with typical
-        losses and with all at their limits; infinite where nothing is lost, endless from 1 down.
+        losses and with all at their limits; infinite where nothing is lost, endless from 1 down,
+        0 where the device may not even reach the trip point.
     stretch, stretch_limit : by how much losses lengthen that time, relative; infinite where it
         never ends.
     metered : that time in second while a meter hangs on the timing node; infinite for never,
@@ -252,7 +253,7 @@ def _leakage(built: _Built, facts: FitFacts) -> Leakage | None:
     circuit, c = built.circuit, built.c
     if circuit.lossless or not facts.is_timed:
         return None
-    charging, meter = _charging(circuit, facts.ohms), 1.0 / METER_OHM
+    charging, meter = facts.charging, 1.0 / METER_OHM
     plain = built.times(circuit.typical.lossless(), 0.0)[0]
     if circuit.typical.trip_ratio(charging, meter) == inf or not 0.0 < plain < inf:
         return None
@@ -266,8 +267,3 @@ def _leakage(built: _Built, facts: FitFacts) -> Leakage | None:
         if circuit.alternating
         else built.times(circuit.typical, c.leak_typical + meter)[0],
     )
-
-
-def _charging(circuit: Circuit, ohms: Sequence[float]) -> float:
-    """Return the resistance in ohm that the capacitor is charged through."""
-    return ohms[0] if len(ohms) > 1 and not circuit.twin.through_both else sum(ohms)

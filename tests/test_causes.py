@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import replace
-from math import hypot, sqrt
+from math import hypot, log, sqrt
 
 import numpy as np
 import pytest
@@ -12,7 +12,9 @@ from hypothesis import strategies as st
 
 from chooser.causes import causes_of, kind_in
 from chooser.circuits.astable import astable
+from chooser.circuits.gates import gate_named, thresholds
 from chooser.circuits.monostable import monostable
+from chooser.circuits.schmitt import schmitt
 from chooser.circuits.timers import timer_named
 from chooser.interval import outlook
 from chooser.networks import Group, Join, Leaf, adding_join, members, value_of
@@ -176,3 +178,33 @@ def test_shares_of_slots_and_device_against_monte_carlo():
         assert share == pytest.approx(variance({slot}) / whole, rel=0.03)
     device = next(cause.share for cause in found if not cause.slot)
     assert device == pytest.approx(variance((), circuit.error.plus / 3.0) / whole, rel=0.03)
+
+
+@pytest.mark.parametrize("supply", [5.0, 10.0])
+def test_thresholds_that_scatter_are_the_devices_share(supply):
+    """The whole variance with exact parts over that with all, drawn from the table's limits."""
+    gate = gate_named("CD40106")
+    circuit, points = schmitt(gate, supply), thresholds(gate, supply)
+    networks = {"R": Leaf(resistor(1, 100e3, 1)), "C": Leaf(film(2, 1e-7, 20))}
+    rng, runs = np.random.default_rng(20_260_901), 400_000
+
+    def drawn(usual, low, high):
+        z = np.clip(rng.standard_normal(runs), -3.0, 3.0)
+        return usual + z / 3.0 * np.where(z < 0.0, usual - low, high - usual)
+
+    upper = drawn(points.upper, points.upper_low, points.upper_high)
+    lower = drawn(points.lower, points.lower_low, points.lower_high)
+    sold = upper - lower >= points.hysteresis_low
+    upper, lower = upper[sold], lower[sold]
+    factor = np.log((1.0 - lower) / (1.0 - upper) * upper / lower)
+    usual = log((1.0 - points.lower) / (1.0 - points.upper) * points.upper / points.lower)
+    device = float(factor.std()) / usual
+    (first, *_) = found = causes(circuit, networks)
+    parts = (0.01**2 + 0.2**2) / 3.0
+    assert (first.slot, first.holding) == ("", None)
+    assert first.share == pytest.approx(device**2 / (device**2 + parts), rel=0.03)
+    assert first.spread_without == pytest.approx(sqrt(parts), rel=0.02)
+    assert sum(cause.share for cause in found) == pytest.approx(1.0, abs=1e-9)
+    assert reading_of(circuit, networks).mean == pytest.approx(
+        float(factor.mean()) / usual * reading_of(circuit, networks).nominal, rel=0.02
+    )

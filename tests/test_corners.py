@@ -38,11 +38,12 @@ RA, RB = slot(47e3, 0.01, 0.01), slot(120e3, 0.05, 0.05)
 def astable_corners(timer, rs, c, supply, error):
     """All combinations of what may be, the middles too: highs, lows and the timer's factor."""
     ideal = timer.ideal
-    for ra, rb, farad, g, losses, switch, factor in product(
+    for ra, rb, farad, g, current, leak, switch, factor in product(
         *((each.low, each.value, each.high) for each in rs),
         (c.low, c.value, c.high),
         (0.0,) if ideal else (0.0, c.leak_typical, c.leak_limit),
-        (0.0, 1.0),
+        {0.0, timer.threshold_current_limit},
+        {0.0, timer.discharge_leakage_limit},
         (0.0, timer.discharge_resistance_typical, timer.discharge_resistance_limit),
         (1.0 - error, 1.0, 1.0 + error),
     ):
@@ -52,8 +53,8 @@ def astable_corners(timer, rs, c, supply, error):
             g,
             supply=supply,
             trips=(timer.threshold, timer.trigger),
-            input_current=losses * timer.threshold_current_limit,
-            switch_leak=losses * timer.discharge_leakage_limit,
+            input_current=current,
+            switch_leak=leak,
             switch=switch,
         )
         yield high * factor, low * factor
@@ -103,15 +104,15 @@ def test_nothing_that_may_happen_lies_outside(name, ohms, leaky, rnd):
     c = slot(1e-6, 0.2, 0.2, limit / 5.0, limit)
     found = outlook(astable(timer, 9.0), rs, c, {"period": (0.0, 1e12)})
     for _ in range(20):
-        losses, switch = rnd.random(), rnd.random() * timer.discharge_resistance_limit
+        switch = rnd.random() * timer.discharge_resistance_limit
         high, low = outputs_by_the_formula(
             [rnd.uniform(each.low, each.high) for each in rs],
             rnd.uniform(c.low, c.high),
             rnd.uniform(0.0, limit),
             supply=9.0,
             trips=(timer.threshold, timer.trigger),
-            input_current=losses * timer.threshold_current_limit,
-            switch_leak=losses * timer.discharge_leakage_limit,
+            input_current=rnd.random() * timer.threshold_current_limit,
+            switch_leak=rnd.random() * timer.discharge_leakage_limit,
             switch=switch,
         )
         made = {"high": high, "low": low, "period": high + low, "duty": high / (high + low)}

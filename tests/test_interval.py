@@ -12,6 +12,7 @@ from sample_slots import EVERYTHING, one_shot, slot
 
 from chooser.circuits.astable import astable
 from chooser.circuits.charging import Phase
+from chooser.circuits.circuit import EXACT
 from chooser.circuits.timers import timer_named
 from chooser.interval import likely_miss, mean_of, outlook, spread_of, weight_of
 
@@ -293,11 +294,36 @@ def test_spread_and_mean_of_the_astable_against_monte_carlo():
     }
     for output, values in made.items():
         reading = found.of(output)
-        # A quotient has a mean beyond the first order: by the square of its spread.
+        assert reading.mean == pytest.approx(float(values.mean()), rel=1e-3), output
+        # The spread of a quotient is to first order.
         second = 1.5 * reading.spread**2 if output == "frequency" else 0.0
-        assert reading.mean == pytest.approx(float(values.mean()), rel=1e-3 + second), output
         sigma = float(values.std()) / reading.nominal
         assert reading.spread == pytest.approx(sigma, rel=1e-2 + 2.0 * second), output
+
+
+def test_the_mean_of_a_frequency_with_one_sided_parts():
+    """Worked out: 1 / C over a uniform law between its ends is ln(b / a) / (b - a)."""
+    rs, c = [slot(10e3, 0.0, 0.0)] * 2, slot(1e-6, 0.0, 0.5)
+    found = outlook(astable(timer_named("ideal"), 9.0), rs, c, {}).of("frequency")
+    assert found.mean == pytest.approx(found.nominal * log(1.5) / 0.5, rel=2e-3)
+
+
+def test_a_piece_that_never_ends_is_left_out_of_the_spread_and_in_no_band():
+    fast, slow, dead = (Phase(5.0, trip) for trip in (0.5, 0.6, 1.0))
+    plain = one_shot("cmos")
+    circuit = replace(
+        plain, typical=fast, corners=(fast,), error=EXACT,
+        scatter=((0.5, fast), (0.3, slow), (0.2, dead)),
+    )  # fmt: skip
+    r, c = slot(1e6, 0.0, 0.0), slot(1e-6, 0.0, 0.0)
+    found = outlook(circuit, (r,), c, {"interval": (0.0, 1e9)})
+    # By hand: ln 2 five times of eight, ln 2.5 three times.
+    few, many = log(2.0), log(2.5)
+    mean = (5.0 * few + 3.0 * many) / 8.0
+    sigma = sqrt((5.0 * (few - mean) ** 2 + 3.0 * (many - mean) ** 2) / 8.0)
+    assert found.chief.mean == pytest.approx(mean)
+    assert found.chief.spread == found.chief.device == pytest.approx(sigma / few)
+    assert found.chance == pytest.approx(0.8)
 
 
 def test_likely_miss():

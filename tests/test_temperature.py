@@ -9,8 +9,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from chooser.errors import BadRequestError
-from chooser.networks import Group, Join, Leaf, adding_join, shares_of, value_of
-from chooser.parts import Count, Holding, Kind, Part
+from chooser.parts import Kind, Part
 from chooser.technologies import LARGE_FARAD, TECHNOLOGIES
 from chooser.temperature import (
     BEHAVIOURS,
@@ -23,7 +22,6 @@ from chooser.temperature import (
     Warmth,
     change_of,
     leak_factor,
-    network_change,
     outside_rating,
 )
 
@@ -207,87 +205,6 @@ def test_limits_are_in_order_and_widen_away_from_the_reference(part, data):
     assert abs(nearer.least) <= abs(further.least)
     assert abs(nearer.typical) <= abs(further.typical)
     assert abs(nearer.most) <= abs(further.most)
-
-
-def holding(number, part):
-    return Leaf(Holding(number, part, "A1", Count(9)))
-
-
-def mixed(kind, technologies):
-    """Make a + (b || c) of three values."""
-    one, two, three = (
-        holding(number, Part(kind, value, technology=technology))
-        for number, (value, technology) in enumerate(
-            zip((1.0, 2.2, 4.7), technologies, strict=True), 1
-        )
-    )
-    return Group(Join.SERIES, (one, Group(Join.PARALLEL, (two, three))))
-
-
-@pytest.mark.parametrize("celsius", [-20.0, 20.0, 60.0])
-@pytest.mark.parametrize(("kind", "technology"), [(_R, "carbon-film"), (_C, "polyester")])
-def test_equal_parts_change_their_network_as_they_change(kind, technology, celsius):
-    change = network_change(mixed(kind, (technology,) * 3), kind, celsius)
-    alone = change_of(Part(kind, 1.0, technology=technology), celsius)
-    assert change.least == pytest.approx(alone.least, abs=1e-12)
-    assert change.typical == pytest.approx(alone.typical, abs=1e-12)
-    assert change.most == pytest.approx(alone.most, abs=1e-12)
-
-
-def test_a_hand_worked_network():
-    # 10k carbon film in series with 30k metal film, 50 K up: a quarter of -5...-0.75 % and three
-    # quarters of -0.5...+0.5 %.
-    network = Group(
-        Join.SERIES,
-        (
-            holding(1, Part(_R, 10e3, technology="carbon-film")),
-            holding(2, Part(_R, 29e3, technology="metal-film", measured=30e3)),
-        ),
-    )
-    change = network_change(network, _R, 70.0)
-    assert change.least == pytest.approx(-0.01625)
-    assert change.typical == pytest.approx(-0.0071875)
-    assert change.most == pytest.approx(0.001875)
-
-
-@pytest.mark.parametrize("end", ["least", "typical", "most"])
-@given(
-    kind=st.sampled_from((_R, _C)),
-    data=st.data(),
-    celsius=st.floats(0.0, 40.0),
-)
-def test_small_changes_of_a_network_are_the_shares_of_its_parts(end, kind, data, celsius):
-    gentle = ("metal-film", "thin-film") if kind is _R else ("c0g", "polyester", "mica")
-    network = mixed(kind, [data.draw(st.sampled_from(gentle)) for _ in range(3)])
-    shared = sum(
-        share * getattr(change_of(member.part, celsius), end)
-        for member, share in shares_of(
-            network, adding_join(kind), lambda member: member.part.effective
-        )
-    )
-    # Second order: the greatest change here is 1.2 %, its square 1.5e-4.
-    assert getattr(network_change(network, kind, celsius), end) == pytest.approx(shared, abs=1.5e-4)
-
-
-@given(
-    celsius=st.floats(COLDEST, HOTTEST),
-    technologies=st.tuples(*[st.sampled_from(sorted(BEHAVIOURS))] * 3),
-    inside=st.tuples(*[st.floats(0.0, 1.0)] * 3),
-)
-def test_no_mixture_of_changes_leaves_the_ends(celsius, technologies, inside):
-    network = mixed(_C, technologies)
-    places = dict(enumerate(inside, 1))
-
-    def somewhere(member):
-        change = change_of(member.part, celsius)
-        place = places[member.id]
-        return member.part.effective * (1 + change.least * (1 - place) + change.most * place)
-
-    nominal = value_of(network, adding_join(_C), lambda member: member.part.effective)
-    relative = value_of(network, adding_join(_C), somewhere) / nominal - 1
-    ends = network_change(network, _C, celsius)
-    assert ends.least - 1e-12 <= relative <= ends.most + 1e-12
-    assert ends.least <= ends.typical <= ends.most
 
 
 @pytest.mark.parametrize(

@@ -13,6 +13,7 @@ from chooser.circuits.charging import Phase
 from chooser.circuits.circuit import Variant
 from chooser.circuits.diodes import diode_named
 from chooser.circuits.monostable import monostable
+from chooser.circuits.output_fed import output_fed
 from chooser.circuits.plain import capacitance, resistance
 from chooser.circuits.steered import steered
 from chooser.circuits.timers import timer_named
@@ -184,6 +185,14 @@ class TestStretch:
         found = judge(steered(CMOS, 9.0, diode_named("ideal")), parts).leakage
         other = judge(steered(CMOS, 9.0, diode_named("ideal")), (parts[0], resistor(1e3), parts[2]))
         assert found.ratio == pytest.approx(other.leakage.ratio, rel=1e-9)
+
+    def test_an_output_that_may_not_reach_the_trip_point(self):
+        """SLFS022: 3.3 V of output at 5 V do not reach 3.33 V, with nothing lost at all."""
+        circuit = output_fed(timer_named("NE555"), 5.0)
+        leakage = judge(circuit, (resistor(47e3), leaking(1e-6, 1e-12))).leakage
+        assert (leakage.ratio_limit, leakage.stretch_limit) == (0.0, inf)
+        assert 1.0 < leakage.ratio < inf
+        assert 0.0 < leakage.stretch < inf
 
 
 class TestFirst:

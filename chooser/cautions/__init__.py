@@ -1,8 +1,9 @@
 """What to look out for before building a fit: stable codes, each with one sentence of advice.
 
 `rules.py` has the rules in order; they stand in `of_parts.py` (what was picked), `of_circuits.py`
-(what the circuit makes of it), `of_discharge.py` (what the discharge pin of a timer has to carry)
-and `of_surroundings.py` (what hangs on the circuit).
+(what the circuit makes of it), `of_devices.py` (what the device leaves open), `of_discharge.py`
+(what the discharge pin of a timer has to carry) and `of_surroundings.py` (what hangs on the
+circuit).
 """
 
 from chooser.cautions.of_circuits import SMALL_CURRENT

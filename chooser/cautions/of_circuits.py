@@ -71,6 +71,8 @@ def may_never_end(facts: FitFacts) -> str | None:
     if facts.circuit.family != COUNTER and intended >= WORTH_DIVIDING:
         typed = format_duration(intended, digits=3).replace(" ", "")
         way += f", or divide down with `chooser fit counter {typed}`"
+        if facts.circuit.outputs[0] not in facts.wanted:
+            way += f" (about the {facts.circuit.outputs[0]} without losses)"
     return f"{state} this {ends}; {way}."
 
 
@@ -89,12 +91,12 @@ def leakage(facts: FitFacts) -> str | None:
     way = "through the capacitor"
     if not _capacitor_leaks_most(facts):
         way = f"to the {circuit.device or 'input'} itself"
-    span = format_percent(usual, digits=2)
+    span = f"by up to {format_percent(most, digits=2)}"
     if most - usual >= LEAK_STRETCH / 2:
-        span += f", at the limit by {format_percent(most, digits=2)}"
+        span += f" ({format_percent(usual, digits=2)} typically)"
     return (
         f"At the trip point the charging current may be only {ratio:.2g} times what is lost, "
-        f"mostly {way}; that lengthens the {facts.charged_name} by {span}: {_way_out(facts)}."
+        f"mostly {way}; that lengthens the {facts.charged_name} {span}: {_way_out(facts)}."
     )
 
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from chooser.cautions.record import FitFacts, farad_text, ohm_text
+from chooser.circuits.astable import trip_points
 from chooser.circuits.timers import Timer
 from chooser.quantities import format_current, format_duration
 
@@ -24,32 +25,39 @@ TIME_CONSTANTS = 5.0
 LONG_RECOVERY = 0.02
 """Share of the interval from which recovery is worth a word: the usual band."""
 
+SHORTEST_REST = 1e-6
+"""Second; nobody triggers again sooner than that (our limit)."""
+
 _ROUNDING = 1e-9
+_SHARE = 0.1  # of the pin's current from which a resistor is named
 
 
 def discharge_pin(facts: FitFacts) -> str | None:
     """Speak of resistors that let too much current into the discharge pin.
 
     While it is on the pin carries supply / R of the resistor that feeds it, and of an astable
-    at first also what the charged capacitor drives through RB.
+    at first also what the capacitor, charged to the upper trip point, drives through RB.
     """
     timer = _discharging(facts)
     if timer is None:
         return None
-    least = facts.circuit.bounds.least
+    least, circuit = facts.circuit.bounds.least, facts.circuit
+    upper, _ = trip_points(timer, facts.supply, circuit.control)
     currents = [facts.supply / facts.ohms[0]]
-    currents += [timer.threshold * facts.supply / ohm for ohm in facts.ohms[1:]]
-    worst = max(range(len(currents)), key=currents.__getitem__)
-    first_is_low = facts.ohms[0] < least * (1.0 - _ROUNDING)
-    if not first_is_low and currents[worst] <= timer.discharge_current_limit * (1.0 + _ROUNDING):
+    currents += [upper * facts.supply / ohm for ohm in facts.ohms[1:]]
+    carried, first = sum(currents), facts.ohms[0] < least * (1.0 - _ROUNDING)
+    over = carried > timer.discharge_current_limit * (1.0 + _ROUNDING)
+    if not (first or over):
         return None
     limit = f"it is specified for {format_current(timer.discharge_current_limit, digits=2)}"
-    if currents[worst] <= timer.discharge_current_limit:
-        worst, limit = 0, f"timing is only specified from {ohm_text(least)} on"
+    who = [place for place, current in enumerate(currents) if current > _SHARE * carried]
+    if not over:
+        who, limit = [0], f"timing is only specified from {ohm_text(least)} on"
+    fed = " and ".join(f"{circuit.resistors[n]} at {ohm_text(facts.ohms[n])}" for n in who)
+    way = f"{ohm_text(least)} or more" if first or len(who) == 1 else "larger ones"
     return (
-        f"With {facts.circuit.resistors[worst]} at {ohm_text(facts.ohms[worst])} the discharge "
-        f"pin carries {format_current(currents[worst], digits=2)}, and {limit}; "
-        f"take {ohm_text(least)} or more."
+        f"With {fed} the discharge pin carries {format_current(carried, digits=2)}"
+        f"{' at first' if len(currents) > 1 else ''}, and {limit}; take {way}."
     )
 
 
@@ -74,7 +82,7 @@ def recovery(facts: FitFacts) -> str | None:
     if timer is None or facts.oscillates:
         return None
     rest = TIME_CONSTANTS * timer.discharge_resistance_limit * facts.c.value
-    if rest <= LONG_RECOVERY * facts.outlook.chief.nominal:
+    if rest <= max(LONG_RECOVERY * facts.outlook.chief.nominal, SHORTEST_REST):
         return None
     return (
         f"Emptying the capacitor takes up to {_emptied(facts, timer)}; leave that long after an "

@@ -5,6 +5,7 @@ from __future__ import annotations
 from math import isfinite
 
 from chooser.cautions.record import FitFacts, farad_text, names, volt_text
+from chooser.circuits.scattering import SIGMAS
 from chooser.networks import Group, Join, Network
 from chooser.parts import Holding, Sureness
 from chooser.quantities import format_percent
@@ -21,6 +22,11 @@ BIG_CHARGE = 0.01
 
 COARSE = 0.05
 """Tolerance of a capacitor from which its errors hide everything else."""
+
+_TAKEN = {
+    "electrolytic": "an electrolytic",
+    "ceramic": "a ceramic of unknown class",
+}
 
 NOISE = 1e-6
 """Errors below a part per million are not told apart."""
@@ -143,15 +149,16 @@ def capacitor_tolerance(facts: FitFacts) -> str | None:
     wide = max(-down, up)
     rest = [facts.slots[name] for name in facts.circuit.resistors]
     others = [max(1.0 - r.low / r.value, r.high / r.value - 1.0) for r in rest]
-    device = max(facts.circuit.error.minus, facts.circuit.error.plus)
+    error = facts.circuit.error
+    device = max(error.minus, error.plus, SIGMAS * facts.outlook.chief.device)
     if wide < COARSE or wide < 2.0 * max(*others, device):
         return None
     if all(holding.part.measured is not None for holding in facts.capacitors):
         return None
-    error = _paper_error(facts)
-    if error is not None and error >= wide:
+    missed = _paper_error(facts)
+    if missed is not None and missed >= wide:
         return None
-    paper = "an exact figure" if error is None else f"the error of {_small(error)}"
+    paper = "an exact figure" if missed is None else f"the error of {_small(missed)}"
     return (
         f"The capacitor alone moves the {facts.circuit.outputs[0]} by "
         f"{format_percent(down, digits=2)} to {format_percent(up, digits=2, signed=True)}, "
@@ -171,6 +178,23 @@ def assumed_tolerance(facts: FitFacts) -> str | None:
     return (
         f"No tolerance is written down for {names(assumed)}, so the usual one is assumed; "
         "measure it or write its tolerance into the stock."
+    )
+
+
+def assumed_kind(facts: FitFacts) -> str | None:
+    """Speak of capacitors whose technology nobody wrote down."""
+    unknown: dict[str, list[Holding]] = {}
+    for holding in facts.capacitors:
+        if technology_of(holding.part) is None:
+            unknown.setdefault(taken_for(holding.part), []).append(holding)
+    if not unknown:
+        return None
+    said = " and ".join(
+        f"{names(holdings)} counts as {_TAKEN.get(kind, kind)}"
+        for kind, holdings in unknown.items()
+    )
+    return (
+        f"No technology is written down, so {said}; write polyester, c0g or what it is beside it."
     )
 
 

@@ -9,9 +9,9 @@ from __future__ import annotations
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 from enum import StrEnum
-from math import isfinite
+from math import inf, isfinite, isinf
 
-from chooser.circuits.circuit import TIMED, Circuit
+from chooser.circuits.circuit import TIMED, Circuit, charging_resistance
 from chooser.circuits.laws import TimesLaw
 from chooser.interval import Outlook, Reading
 from chooser.networks import Network, members
@@ -35,9 +35,12 @@ class Code(StrEnum):
     FREQUENCY_LIMIT = "frequency-limit"
     LEAKAGE = "leakage"
     CAPACITOR_TOLERANCE = "capacitor-tolerance"
+    DEVICE_SCATTER = "device-scatter"
     DIODE_SUPPLY = "diode-supply"
+    THRESHOLD_EXACT = "threshold-exact"
     OUTSIDE_RATING = "outside-rating"
     ASSUMED_TOLERANCE = "assumed-tolerance"
+    ASSUMED_KIND = "assumed-kind"
     ROUGH_COUNT = "rough-count"
     RATING_UNKNOWN = "rating-unknown"
     DISCHARGE_SURGE = "discharge-surge"
@@ -101,8 +104,7 @@ class FitFacts:
     @property
     def charging(self) -> float:
         """Resistance in ohm that the capacitor is charged through."""
-        steered = len(self.ohms) > 1 and not self.circuit.twin.through_both
-        return self.ohms[0] if steered else sum(self.ohms)
+        return float(charging_resistance(self.circuit, self.ohms)) if self.ohms else 0.0
 
     @property
     def capacitors(self) -> tuple[Holding, ...]:
@@ -144,12 +146,14 @@ class FitFacts:
 
         Returns
         -------
-        Relative to the shorter time; infinity where only the longer one never ends, 0 where the
-        shorter one never ends or does not start.
+        Relative to the shorter time; infinity where the longer one never ends, 0 where the
+        shorter one does not start.
         """
         less, least_leak = (law.lossless(), 0.0) if over is None else (law, over)
         lossy = float(law.times(self.ohms, self.c.value, leak)[0])
         plain = float(less.times(self.ohms, self.c.value, least_leak)[0])
+        if isinf(lossy):
+            return inf
         return lossy / plain - 1.0 if isfinite(plain) and plain > 0.0 else 0.0
 
 

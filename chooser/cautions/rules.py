@@ -6,7 +6,13 @@ worth knowing, so that the first caution of a fit is the one that matters most.
 
 from __future__ import annotations
 
-from chooser.cautions import of_circuits, of_discharge, of_parts, of_surroundings
+from chooser.cautions import (
+    of_circuits,
+    of_devices,
+    of_discharge,
+    of_parts,
+    of_surroundings,
+)
 from chooser.cautions.record import Caution, Code, FitFacts, Rule
 
 RULES: tuple[tuple[Code, Rule], ...] = (
@@ -22,9 +28,12 @@ RULES: tuple[tuple[Code, Rule], ...] = (
     (Code.FREQUENCY_LIMIT, of_circuits.frequency_limit),
     (Code.LEAKAGE, of_circuits.leakage),
     (Code.RATING_MARGIN, of_parts.thin_margin),
+    (Code.DEVICE_SCATTER, of_devices.device_scatter),
     (Code.CAPACITOR_TOLERANCE, of_parts.capacitor_tolerance),
     (Code.DIODE_SUPPLY, of_circuits.diode_supply),
+    (Code.THRESHOLD_EXACT, of_devices.threshold_exact),
     (Code.ASSUMED_TOLERANCE, of_parts.assumed_tolerance),
+    (Code.ASSUMED_KIND, of_parts.assumed_kind),
     (Code.ROUGH_COUNT, of_parts.rough_count),
     (Code.RATING_UNKNOWN, of_parts.rating_unknown),
     (Code.DISCHARGE_SURGE, of_discharge.discharge_surge),

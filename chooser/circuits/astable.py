@@ -21,7 +21,7 @@ from numpy.typing import ArrayLike
 
 from chooser.circuits.charging import Array, rising, swing_time
 from chooser.circuits.circuit import Circuit
-from chooser.circuits.control import check_control
+from chooser.circuits.control import check_control, control_text
 from chooser.circuits.laws import solved
 from chooser.circuits.monostable import LEAST_FARAD, timer_bounds
 from chooser.circuits.timers import Timer
@@ -209,16 +209,20 @@ def astable(timer: Timer, supply: float, control: float | None = None) -> Circui
         first=_typical(timer, supply, upper, 0.0),
         temperature_drift=timer.astable_temperature_drift_limit,
         supply_drift=timer.astable_supply_drift_limit,
+        setting=control_text(control),
         control=control,
     )
 
 
 def trip_points(timer: Timer, supply: float, control: float | None) -> tuple[float, float]:
-    """Return the upper and the lower trip point as fractions of the supply (volt)."""
+    """Return the upper and the lower trip point as fractions of the supply (volt).
+
+    The timer's own divider makes the lower one from the upper one, so it goes with it.
+    """
     if control is None:
         return timer.threshold, timer.trigger
     upper = check_control(timer, supply, control) / supply
-    return upper, upper / 2.0
+    return upper, upper * (timer.trigger / timer.threshold)
 
 
 def shortest_period(timer: Timer) -> float:
@@ -241,16 +245,13 @@ def _typical(timer: Timer, supply: float, upper: float, lower: float) -> Astable
 
 
 def _corners(timer: Timer, supply: float, upper: float, lower: float) -> tuple[AstableLaw, ...]:
-    """Return every combination of no and most losses, full and poorest discharge."""
+    """Return every combination of no and most loss in input and switch, full and poor discharge."""
     if timer.ideal:
         return (_textbook(supply, upper, lower),)
-    losses = (
-        (0.0, 0.0),
-        (timer.threshold_current_limit, timer.discharge_leakage_limit),
-    )
     return tuple(
-        AstableLaw(supply, upper, lower, *loss, switch)
-        for loss in losses
+        AstableLaw(supply, upper, lower, current, leak, switch)
+        for current in (0.0, timer.threshold_current_limit)
+        for leak in (0.0, timer.discharge_leakage_limit)
         for switch in (0.0, timer.discharge_resistance_limit)
     )
 

@@ -247,11 +247,15 @@ class Phase:
     def trip_ratio(self, r: float, g: float) -> float:
         """Return the current through R at the trip point over all losses there.
 
-        Infinity where nothing is lost or losses help; at 1 or below the time never ends. R in
-        ohm, the leak conductance in siemens.
+        Infinity where nothing is lost or losses help, 0 where the trip point lies at or beyond
+        the source; at 1 or below the time never ends. R in ohm, the leak conductance in siemens.
         """
+        if self.factor is not None:
+            return inf
+        if self.threshold >= 1.0:
+            return 0.0
         loss = float(self._loss(np.asarray(g)))
-        if self.factor is not None or loss <= 0.0:
+        if loss <= 0.0:
             return inf
         return (1.0 - self.threshold) / (r + self.series) / loss
 

@@ -12,8 +12,10 @@ from math import inf
 from typing import Any, cast
 
 from chooser.circuits.laws import Law, TimesLaw, TwinLaw
+from chooser.circuits.scattering import Scatter
 from chooser.circuits.timers import Timer
 from chooser.parts import Tolerance
+from chooser.quantities import format_tolerance
 
 EXACT = Tolerance(0.0, 0.0)
 
@@ -81,6 +83,8 @@ class Circuit:
     typical : its formula with the device at its typical figures.
     corners : the same at the corners of the device's figures.
     error : limits of the device's own factor on all times; a third of each counts as one sigma.
+    scatter : laws of pieces that stand for how the device's own figures scatter, each with its
+        probability, all of them 1; besides `error`. Empty where nothing else scatters.
     bounds : resistances that the house rule allows.
     least_farad, most_farad : capacitances likewise.
     lossless : whether capacitor leakage is left out, as the textbook does.
@@ -89,6 +93,8 @@ class Circuit:
     timer : the timer, where it is one. variants : ways to take the output.
     taps : all outputs of a counter with their scales, for timing it by an earlier one.
     first : the formula of the first time after power-up, where it differs.
+    setting : what else was decided that the figures rest on, as people say it, such as
+        "control pin at 4 V"; "" for the usual.
     temperature_drift, supply_drift : of the times by the device, in 1/K and 1/V, the greatest
         usual size.
     control : voltage in volt forced on the timer's control pin; None where it is open.
@@ -107,6 +113,7 @@ class Circuit:
     typical: TimesLaw
     corners: tuple[TimesLaw, ...]
     error: Tolerance = EXACT
+    scatter: Scatter = ()
     bounds: Bounds = Bounds()
     least_farad: float = 0.0
     most_farad: float = inf
@@ -117,6 +124,7 @@ class Circuit:
     variants: tuple[Variant, ...] = (Variant(),)
     taps: tuple[Variant, ...] = ()
     first: TimesLaw | None = None
+    setting: str = ""
     temperature_drift: float = 0.0
     supply_drift: float = 0.0
     control: float | None = None
@@ -138,6 +146,36 @@ class Circuit:
     def slots(self) -> tuple[str, ...]:
         """Names of all slots, the capacitor's last."""
         return (*self.resistors, *(("C",) if self.capacitor else ()))
+
+
+def limits_text(error: Tolerance) -> str:
+    """Write how far something may be off: " +/-2%", " -1/+3%", or nothing where it is exact."""
+    if error == EXACT:
+        return ""
+    text = format_tolerance(error)
+    return f" +/-{text}" if error.minus == error.plus else f" {text}"
+
+
+def sheet_bounds(least: float, most: float) -> Bounds:
+    """Return the resistances (ohm) that a data sheet allows for a timing resistor."""
+    return Bounds(
+        least, most, "least resistor of its data sheet", "largest resistor of its data sheet"
+    )
+
+
+def charging_resistance(circuit: Circuit, values: Sequence[Any]) -> Any:
+    """Return the resistance that the capacitor is charged through.
+
+    Parameters
+    ----------
+    circuit : which one. values : of its resistor slots in order, in ohm: numbers or arrays.
+
+    Returns
+    -------
+    Ohm, a number or an array as the values are.
+    """
+    through_one = len(values) > 1 and not circuit.twin.through_both
+    return values[0] if through_one else sum(values[1:], values[0])
 
 
 def outputs_of(circuit: Circuit, times: Sequence[Any]) -> Mapping[str, Any]:

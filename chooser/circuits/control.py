@@ -1,4 +1,7 @@
-"""A voltage forced on the control pin: it is the upper trip point, half of it the lower one."""
+"""A voltage forced on the control pin: it is the upper trip point.
+
+The lower one follows it through the timer's own divider, so their ratio stays what it is.
+"""
 
 from __future__ import annotations
 
@@ -34,3 +37,8 @@ def check_control(timer: Timer, supply: float, control: float) -> float:
         f"{format_voltage(supply)}; choose a control voltage between {format_voltage(LOWEST_VOLT)} "
         f"and {format_voltage(most, digits=3)}."
     )
+
+
+def control_text(control: float | None) -> str:
+    """Say what is forced on the control pin, "" where it is open."""
+    return "" if control is None else f"control pin at {format_voltage(control)}"

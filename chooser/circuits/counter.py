@@ -15,7 +15,7 @@ from __future__ import annotations
 from math import log
 
 from chooser.circuits.charging import Phase
-from chooser.circuits.circuit import Bounds, Circuit, Companion, Variant
+from chooser.circuits.circuit import Circuit, Companion, Variant, sheet_bounds
 from chooser.circuits.counters import Counter, Output, check_counter_supply
 from chooser.circuits.laws import Train
 from chooser.parts import Tolerance
@@ -63,16 +63,12 @@ def counter(
         typical=law,
         corners=(law,),
         error=Tolerance(chip.rule_minus, chip.rule_plus),
-        bounds=Bounds(
-            chip.smallest_resistor,
-            chip.largest_resistor,
-            "least resistor of its data sheet",
-            "largest resistor of its data sheet",
-        ),
+        bounds=sheet_bounds(chip.smallest_resistor, chip.largest_resistor),
         least_farad=max(chip.smallest_capacitor, fastest),
         alternating=True,
         variants=variants,
         taps=taps,
+        setting="a whole period of the output" if whole_period else "first rise after a reset",
         companions=(_second_resistor(chip),),
         reset_on_power=True,
     )

@@ -55,9 +55,7 @@ class Counter:
     name : type. title : what it is, in words. number : bare number, or "".
     supply_min, supply_max : supply voltage in volt.
     period_factor : k of the oscillator's period.
-    unit_to_unit : how far pieces differ from their mean, either way, a fraction.
-    rule_minus, rule_plus : how far a period may lie below and above the rule, fractions of it;
-        pieces that were measured lie further off than pieces differ from each other.
+    rule_minus, rule_plus : how far a period may lie below and above the rule, fractions of it.
     smallest_resistor, largest_resistor : timing resistor Rt, ohm.
     smallest_capacitor : timing capacitor Ct, farad.
     series_least, series_most : second resistor Rs, in multiples of Rt.
@@ -72,7 +70,6 @@ class Counter:
     supply_min: float
     supply_max: float
     period_factor: float
-    unit_to_unit: float
     rule_minus: float
     rule_plus: float
     smallest_resistor: float
@@ -173,7 +170,6 @@ COUNTERS = Catalogue(
         "supply_min": _POSITIVE,
         "supply_max": _POSITIVE,
         "period_factor": _POSITIVE,
-        "unit_to_unit": Number(below_one=True),
         "rule_minus": Number(below_one=True),
         "rule_plus": Number(),
         "smallest_resistor": _POSITIVE,

@@ -2,16 +2,16 @@
 
     t = R C ln(1 / (1 - a)) to a fraction a of the supply
 
-for a step of the supply and an unloaded node: power-on resets, slow enables.
+for a step of the supply and an unloaded node: power-on resets, slow enables. A threshold that
+is only known within limits scatters between them; a leak may keep the node below a high one.
 """
 
 from __future__ import annotations
 
-from math import log1p
-
 from chooser.circuits.charging import Phase
-from chooser.circuits.circuit import Bounds, Circuit
+from chooser.circuits.circuit import EXACT, Bounds, Circuit, limits_text
 from chooser.circuits.monostable import LEAST_FARAD, MOST_OHM
+from chooser.circuits.scattering import scattered
 from chooser.errors import BadRequestError
 from chooser.parts import Tolerance
 from chooser.quantities import format_percent
@@ -43,9 +43,8 @@ def delay(supply: float, threshold: float, error: Tolerance) -> Circuit:
             f"A threshold that may be {format_percent(most, digits=3)} of the supply is not "
             f"reached in any dependable time; it has to stay below {format_percent(HIGHEST)}."
         )
-    usual = _factor(threshold)
-    least = _factor(threshold * (1.0 - error.minus))
-    law = Phase(supply, threshold)
+    least = threshold * (1.0 - error.minus)
+    ends = (threshold,) if error == EXACT else (least, most)
     return Circuit(
         family="delay",
         title="RC delay",
@@ -54,14 +53,10 @@ def delay(supply: float, threshold: float, error: Tolerance) -> Circuit:
         resistors=("R",),
         capacitor=True,
         outputs=("interval",),
-        typical=law,
-        corners=(law,),
-        error=Tolerance(1.0 - least / usual, _factor(most) / usual - 1.0),
+        typical=Phase(supply, threshold),
+        corners=tuple(Phase(supply, end) for end in ends),
+        scatter=scattered((threshold, least, most), lambda trip: Phase(supply, trip)),
         bounds=Bounds(0.0, MOST_OHM, "", "leakage of the board"),
         least_farad=LEAST_FARAD,
+        setting=f"until {format_percent(threshold, digits=4)} of the supply{limits_text(error)}",
     )
-
-
-def _factor(threshold: float) -> float:
-    """Return the delay over R C to a fraction of the supply."""
-    return -log1p(-threshold)

@@ -9,8 +9,10 @@ with slope = n k T / q at room temperature; a slope of 0 is the textbook's const
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from dataclasses import dataclass, field
 from pathlib import Path
+from typing import Any
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -31,6 +33,7 @@ class Diode:
     drop : forward voltage at the reference current, volt.
     reference_current : ampere.
     slope : further volts for a current e times as large; 0 for a constant drop.
+    fall_per_kelvin : volt by which the drop falls for one kelvin more.
     sources : (figure, where it is from) pairs; not part of equality.
     """
 
@@ -39,6 +42,7 @@ class Diode:
     drop: float
     reference_current: float
     slope: float
+    fall_per_kelvin: float = 0.0
     sources: tuple[tuple[str, str], ...] = field(default=(), compare=False, repr=False)
 
     def drop_at(self, current: ArrayLike) -> NDArray[np.float64]:
@@ -99,8 +103,16 @@ def _constant(volt: float) -> Diode:
         drop=volt,
         reference_current=1e-3,
         slope=0.0,
-        sources=(("drop", "as typed"), ("reference_current", "as typed"), ("slope", "as typed")),
+        fall_per_kelvin=DIODES.built_in["silicon"].fall_per_kelvin if volt else 0.0,
+        sources=(
+            *((key, "as typed") for key in ("drop", "reference_current", "slope")),
+            ("fall_per_kelvin", "as silicon"),
+        ),
     )
+
+
+def _as_silicon(key: str, _values: Mapping[str, Any]) -> tuple[float, str]:
+    return getattr(DIODES.built_in["silicon"], key), "default: as silicon"
 
 
 def _check(_diode: Diode, _place: str) -> None:
@@ -116,6 +128,7 @@ DIODES = Catalogue(
         "drop": Number(),
         "reference_current": Number(above_zero=True),
         "slope": Number(),
+        "fall_per_kelvin": Number(default=_as_silicon),
     },
     check=_check,
 )

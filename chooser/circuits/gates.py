@@ -89,6 +89,14 @@ class Thresholds:
     lower_high: float
     hysteresis_low: float
 
+    def allow(self, upper: float, lower: float) -> bool:
+        """Tell whether a piece may have these thresholds."""
+        return (
+            self.upper_low * (1.0 - _ROUNDING) <= upper <= self.upper_high * (1.0 + _ROUNDING)
+            and self.lower_low * (1.0 - _ROUNDING) <= lower <= self.lower_high * (1.0 + _ROUNDING)
+            and upper - lower >= self.hysteresis_low * (1.0 - _ROUNDING)
+        )
+
     def closest(self) -> tuple[float, float]:
         """Return the upper and lower threshold, within the limits, of the shortest period.
 
@@ -102,7 +110,29 @@ class Thresholds:
         lower = min(max((1.0 - gap) / 2.0, least), most)
         return lower + gap, lower
 
+    def extremes(self) -> tuple[tuple[float, float], ...]:
+        """Return the pairs of upper and lower threshold at which times and duty are extreme.
 
+        Those are the corners of what the limits and the least hysteresis leave of all pairs:
+        high and low time are monotone in either threshold, so their ends lie there; the duty's
+        do too (tried on a grid for every row on file), and the shortest period's is `closest`.
+        """
+        ends = [(upper, lower) for upper in self._uppers for lower in self._lowers]
+        gap = self.hysteresis_low
+        ends += [(upper, upper - gap) for upper in self._uppers]
+        ends += [(lower + gap, lower) for lower in self._lowers]
+        return tuple(dict.fromkeys((*(pair for pair in ends if self.allow(*pair)), self.closest())))
+
+    @property
+    def _uppers(self) -> tuple[float, float]:
+        return self.upper_low, self.upper_high
+
+    @property
+    def _lowers(self) -> tuple[float, float]:
+        return self.lower_low, self.lower_high
+
+
+_ROUNDING = 1e-12
 _VOLTS = tuple(Thresholds.__dataclass_fields__)
 
 

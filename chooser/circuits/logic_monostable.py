@@ -11,9 +11,9 @@ from __future__ import annotations
 from math import expm1
 
 from chooser.circuits.charging import Phase
-from chooser.circuits.circuit import Bounds, Circuit
+from chooser.circuits.circuit import Circuit, sheet_bounds
 from chooser.circuits.one_shots import OneShot, factor
-from chooser.circuits.schmitt import MEASURED
+from chooser.circuits.schmitt import MEASURED, measured_text
 from chooser.parts import Tolerance
 
 
@@ -53,13 +53,9 @@ def logic_monostable(
         typical=law,
         corners=(law,),
         error=error,
-        bounds=Bounds(
-            one_shot.smallest_resistor,
-            one_shot.largest_resistor,
-            "least resistor of its data sheet",
-            "largest resistor of its data sheet",
-        ),
+        bounds=sheet_bounds(one_shot.smallest_resistor, one_shot.largest_resistor),
         least_farad=one_shot.smallest_capacitor,
         most_farad=one_shot.largest_capacitor,
         alternating=one_shot.alternating,
+        setting="" if measured is None else measured_text(k, error),
     )

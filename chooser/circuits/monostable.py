@@ -12,7 +12,7 @@ from math import inf, log, log1p
 
 from chooser.circuits.charging import Phase
 from chooser.circuits.circuit import Bounds, Circuit
-from chooser.circuits.control import check_control
+from chooser.circuits.control import check_control, control_text
 from chooser.circuits.timers import Timer
 from chooser.parts import Tolerance
 
@@ -66,6 +66,7 @@ def monostable(timer: Timer, supply: float, control: float | None = None) -> Cir
         timer=timer,
         temperature_drift=timer.temperature_drift_limit,
         supply_drift=timer.supply_drift_limit,
+        setting=control_text(control),
         control=control,
     )
 

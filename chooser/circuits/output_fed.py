@@ -3,8 +3,9 @@
     high = R C ln((Voh - b V) / (Voh - a V)),  low = R C ln((a V - Vol) / (b V - Vol))
 
 with the output's real levels Voh and Vol; only where they reach the rails are both R C ln 2.
-The output's own resistance stands in series with R. Where Voh does not clear the upper trip
-point the circuit stalls: a bipolar output at 5 V is that low.
+The output's own resistance stands in series with R. The levels scatter from piece to piece;
+where Voh does not clear the upper trip point the circuit stalls: a bipolar output at 5 V is that
+low.
 """
 
 from __future__ import annotations
@@ -16,10 +17,14 @@ from chooser.circuits.charging import Phase, falling, rising
 from chooser.circuits.circuit import Bounds, Circuit
 from chooser.circuits.laws import Train
 from chooser.circuits.monostable import LEAST_FARAD, MOST_OHM, TRIP_RATIO
+from chooser.circuits.output import check_output
+from chooser.circuits.scattering import Figure, Scatter, scattered_pair
 from chooser.circuits.timers import Timer
 from chooser.errors import BadRequestError
 from chooser.parts import Tolerance
 from chooser.quantities import format_current, format_voltage
+
+_HARDLY = 1e-6  # of the supply: a source that hardly moves the node
 
 LEAST_OHM = 1e3
 """Common practice, no source: below it R is a load of its own on the output."""
@@ -36,8 +41,10 @@ def output_fed(timer: Timer, supply: float, load: float = 0.0) -> Circuit:
     Raises
     ------
     BadRequestError
-        A high output that does not clear the upper trip point: the circuit would stall.
+        A load beyond what the output may source, or a high output that does not clear the upper
+        trip point: the circuit would stall.
     """
+    check_output(f"{timer.name} timer", timer.source_current_limit, load, "the load takes")
     typical = _high_level(timer, supply, load, timer.output_high_drop_typical)
     if typical <= timer.threshold:
         _refuse(timer, supply, load, typical)
@@ -53,6 +60,7 @@ def output_fed(timer: Timer, supply: float, load: float = 0.0) -> Circuit:
         typical=_train(timer, supply, typical, timer.output_low_typical, _usual(timer)),
         corners=_corners(timer, supply, load),
         error=Tolerance(error, error),
+        scatter=_scatter(timer, supply, load),
         bounds=_bounds(timer, supply, typical),
         least_farad=LEAST_FARAD,
         lossless=timer.ideal,
@@ -61,6 +69,7 @@ def output_fed(timer: Timer, supply: float, load: float = 0.0) -> Circuit:
         first=Train((_high(timer, supply, typical, 0.0, _usual(timer)),)),
         temperature_drift=timer.astable_temperature_drift_limit,
         supply_drift=timer.astable_supply_drift_limit,
+        setting=f"{format_current(load)} load on the high output" if load else "",
     )
 
 
@@ -91,6 +100,7 @@ def _high(timer: Timer, supply: float, source: float, start: float, current: flo
         stop = timer.threshold
         return Phase(supply, stop, factor=log((1.0 - start) / (1.0 - stop)))
     series = timer.output_high_resistance
+    source = max(source, start + _HARDLY)  # a level below the start never gets anywhere either
     return rising(supply, source, start, timer.threshold, current=current, series=series)
 
 
@@ -111,20 +121,39 @@ def _train(timer: Timer, supply: float, high: float, low_volt: float, current: f
 
 
 def _corners(timer: Timer, supply: float, load: float) -> tuple[Train, ...]:
-    """Return every combination of output levels and input currents.
-
-    No sheet prints the least drop of a high output; it is taken as far below the typical one
-    as the limit is above it.
-    """
+    """Return every combination of output levels and input currents."""
     if timer.ideal:
         return (_train(timer, supply, 1.0, 0.0, 0.0),)
-    usual, most = timer.output_high_drop_typical, timer.output_high_drop_limit
-    drops = (max(2.0 * usual - most, 0.0), most)
+    _, *drops = _drop(timer)
     return tuple(
         _train(timer, supply, _high_level(timer, supply, load, drop), low, current)
         for drop in drops
         for low in (0.0, timer.output_low_limit)
         for current in (0.0, timer.threshold_current_limit)
+    )
+
+
+def _drop(timer: Timer) -> Figure:
+    """Return the drop of a high output in volt: typical, least, most.
+
+    No sheet prints the least one; it is taken as far below the typical one as the limit is
+    above it.
+    """
+    usual, most = timer.output_high_drop_typical, timer.output_high_drop_limit
+    return usual, max(2.0 * usual - most, 0.0), most
+
+
+def _scatter(timer: Timer, supply: float, load: float) -> Scatter:
+    """Return pieces with all output levels that the limits allow, at typical input current."""
+    if timer.ideal:
+        return ()
+    usual, most = timer.output_low_typical, timer.output_low_limit
+    return scattered_pair(
+        _drop(timer),
+        (usual, max(2.0 * usual - most, 0.0), most),
+        lambda drop, low: _train(
+            timer, supply, _high_level(timer, supply, load, drop), low, _usual(timer)
+        ),
     )
 
 

@@ -24,7 +24,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from fractions import Fraction
-from math import inf, log
+from math import inf, log, sqrt
 from typing import cast
 
 import numpy as np
@@ -34,13 +34,15 @@ from chooser.circuits.astable import AstableLaw, astable, trip_points
 from chooser.circuits.charging import Array, swing_time
 from chooser.circuits.circuit import Circuit
 from chooser.circuits.diodes import Diode
-from chooser.circuits.laws import solved
+from chooser.circuits.laws import TimesLaw, solved
+from chooser.circuits.scattering import Figure, Scatter, off_usual
 from chooser.circuits.timers import Timer
 from chooser.errors import BadRequestError
 from chooser.quantities import format_voltage
+from chooser.temperature import REFERENCE_CELSIUS
 
 DROP_ERROR = 0.05
-"""Volt by which pieces and a few degrees move a diode's drop (common practice, no source)."""
+"""Volt by which pieces and a few degrees move a diode's drop at most (common practice)."""
 
 _ROOTS, _HALVES = np.polynomial.legendre.leggauss(5)
 _NODES, _WEIGHTS = (1.0 - _ROOTS) / 2.0, _HALVES / 2.0  # from the end of the movement to its start
@@ -120,10 +122,16 @@ class SteeredLaw:
         return solved(lambda rb: self._low(ra, rb, c, g), low, np.maximum(guess, 1.0) / 1.3)
 
     def endless_from(self, g: ArrayLike) -> Array:
-        """Return the RA in ohm from which on the high time never ends."""
+        """Return the RA in ohm from which on the high time never ends, whatever RB is.
+
+        Past one diode RB goes on charging where the diode's drop is all that is left, so only
+        what stops the plain astable stops the circuit for any RB.
+        """
         timer = self.timer
         if self._factors is not None:
             return np.full(np.shape(g), inf)
+        if not self.both:
+            return timer.endless_from(g)
         loss = timer.input_current + timer.upper * timer.supply * np.asarray(g, dtype=np.float64)
         return self._charging_with(loss)
 
@@ -134,7 +142,11 @@ class SteeredLaw:
         return self._charging_with(ratio * lost)
 
     def trip_ratio(self, r: float, g: float) -> float:
-        """Return the charging current through r ohm over all losses at the upper trip point."""
+        """Return the charging current through r ohm over all losses at the upper trip point.
+
+        That is through the diode; what RB passes by one diode is left out, so at 1 or below the
+        time may still end there.
+        """
         timer = self.timer
         lost = timer.input_current + timer.switch_leak + timer.upper * timer.supply * g
         if self._factors is not None or lost == 0.0:
@@ -278,8 +290,8 @@ def steered(
         A supply that the drop leaves too little of, or a control voltage that cannot be.
     """
     upper, lower = trip_points(timer, supply, control)
-    drops = (diode.drop, diode.drop + DROP_ERROR, max(diode.drop - DROP_ERROR, 0.0))
-    if drops[1] >= supply * min(1.0 - upper, lower if both else 1.0):
+    drops = (diode.drop, max(diode.drop - DROP_ERROR, 0.0), diode.drop + DROP_ERROR)
+    if drops[2] >= supply * min(1.0 - upper, lower if both else 1.0):
         raise BadRequestError(
             f"At {format_voltage(supply)} a diode that drops {format_voltage(diode.drop)} leaves "
             "nothing to charge with at the trip point; take a Schottky diode or a higher supply."
@@ -291,11 +303,60 @@ def steered(
         for law in laws
         for drop in (drops[1:] if diode.drop else drops[:1])
     )
+    usual = SteeredLaw(cast("AstableLaw", plain.typical), diode, both)
     return replace(
         plain,
         family="steered",
         title="Steered astable",
-        typical=SteeredLaw(cast("AstableLaw", plain.typical), diode, both),
+        typical=usual,
         corners=corners,
+        scatter=_scatter(usual, drops),
+        setting=", ".join(filter(None, (_setting(diode, both=both), plain.setting))),
         first=SteeredLaw(cast("AstableLaw", plain.first), diode, both),
     )
+
+
+def with_diode_at(circuit: Circuit, celsius: float) -> Circuit:
+    """Return a circuit with its diodes at a temperature; any without a diode as it is.
+
+    Parameters
+    ----------
+    circuit : any circuit. celsius : temperature in degree Celsius.
+    """
+    usual = circuit.typical
+    if not isinstance(usual, SteeredLaw) or not usual.diode.fall_per_kelvin:
+        return circuit
+    fall = usual.diode.fall_per_kelvin * (celsius - REFERENCE_CELSIUS)
+
+    def moved(law: TimesLaw) -> TimesLaw:
+        diode = cast("SteeredLaw", law).diode
+        drop = max(diode.drop - fall, 0.0)
+        return replace(cast("SteeredLaw", law), diode=replace(diode, drop=drop))
+
+    return replace(
+        circuit,
+        typical=moved(usual),
+        corners=tuple(moved(law) for law in circuit.corners),
+        scatter=tuple((weight, moved(law)) for weight, law in circuit.scatter),
+        first=None if circuit.first is None else moved(circuit.first),
+    )
+
+
+def _scatter(usual: SteeredLaw, drops: Figure) -> Scatter:
+    """Return pieces of the diode, its drop as usual and to either side; a pair is of one make.
+
+    Three of them have the mean and the sigma of a normal law (Gauss-Hermite quadrature).
+    """
+    if usual.diode.drop == 0.0:
+        return ()
+    far, beside = sqrt(3.0), 1.0 / 6.0
+    return tuple(
+        (weight, replace(usual, diode=replace(usual.diode, drop=off_usual(drops, z))))
+        for weight, z in ((beside, -far), (1.0 - 2.0 * beside, 0.0), (beside, far))
+    )
+
+
+def _setting(diode: Diode, *, both: bool) -> str:
+    """Say which diodes there are, and where."""
+    named = f"{diode.name} diode" if diode.slope or not diode.drop else f"diode of {diode.name}"
+    return f"a {named} in each path" if both else f"{named} past RB"

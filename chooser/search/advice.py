@@ -8,13 +8,14 @@ from dataclasses import replace
 import numpy as np
 
 from chooser.cautions import SMALL_CURRENT
+from chooser.circuits.circuit import charging_resistance
 from chooser.parts import Holding, Kind
 from chooser.search.house_rules import Usable, resistor_bounds
 from chooser.search.purchase import one_purchase
 from chooser.search.request import Fit, Request
 from chooser.search.slots import charging_bounds, leak_of
 from chooser.search.terms import USUAL_PARTS, Rule
-from chooser.search.wanted import charging_of, wanted_resistances
+from chooser.search.wanted import wanted_resistances
 from chooser.technologies import taken_for
 
 FURTHER = "divide a shorter interval with an oscillator and a counter"
@@ -126,7 +127,7 @@ def _out_of_reach(usable: Usable, request: Request) -> tuple[str, ...]:
     for variant in circuit.variants:
         alone = replace(request, circuit=replace(circuit, variants=(variant,)))
         rs = wanted_resistances(alone, farad, leak)
-        too_long.append(bool(np.all(charging_of(circuit, rs) > most)))
+        too_long.append(bool(np.all(charging_resistance(circuit, rs) > most)))
         too_short.append(bool(np.all(np.min(rs, axis=0) < least)))
     if all(too_long):
         return (_too_long(usable, request),)

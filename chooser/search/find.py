@@ -95,7 +95,7 @@ def _limit_of(not_listed: Collection[int], request: Request) -> str:
                 f"the {NEAREST} nearest RB to each capacitor network and {NEAREST} RA beside each"
             )
         if request.circuit.resistors:
-            said.append(f"only {near} were weighed")
+            said.append(f"only {near}")
     if not_listed:
         sizes = " and ".join(str(size) for size in sorted(not_listed))
         said.append(f"networks of {sizes} capacitors, too many to list, were not covered")

@@ -9,7 +9,7 @@ from itertools import product
 
 import numpy as np
 
-from chooser.circuits.circuit import outputs_of
+from chooser.circuits.circuit import charging_resistance, outputs_of
 from chooser.circuits.leakage import leak_conductance
 from chooser.parts import Holding, Kind, Part
 from chooser.preferred import values_between
@@ -24,7 +24,7 @@ from chooser.search.pools import Floats, Ints
 from chooser.search.request import Request
 from chooser.search.slots import charging_bounds
 from chooser.search.terms import Rule
-from chooser.search.wanted import FAR_OHM, LEAST_OHM, aim_of, charging_of
+from chooser.search.wanted import FAR_OHM, LEAST_OHM, aim_of
 
 BIGGEST_FILM = 4.7e-6
 """Farad up to which film capacitors are commonly sold (common practice, no source)."""
@@ -255,7 +255,7 @@ def _errors(columns: dict[str, Floats], leak: Floats, request: Request) -> Float
     allowed = np.isfinite(errors) & in_ranges(request, times)
     if rs and circuit.capacitor:
         least, most = charging_bounds(leak, request)
-        largest = np.maximum(charging_of(circuit, rs), np.max(rs, axis=0))
+        largest = np.maximum(charging_resistance(circuit, rs), np.max(rs, axis=0))
         allowed &= (largest <= most) & (np.min(rs, axis=0) >= least)
     if circuit.capacitor and Rule.STRAYS not in request.lifted:
         allowed &= farad >= circuit.least_farad

@@ -5,7 +5,6 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import ArrayLike
 
-from chooser.circuits.circuit import Circuit
 from chooser.search.pools import Floats
 from chooser.search.request import Request
 from chooser.search.slots import charging_bounds
@@ -67,10 +66,3 @@ def _pair(request: Request, farad: Floats, leak: Floats) -> tuple[Floats, Floats
         ra[reached] = law.ra_for(high, np.maximum(rb[reached], LEAST_OHM), farad, leak)
         rb[reached] = law.rb_for(low, np.maximum(ra[reached], LEAST_OHM), farad, leak)
     return ra, rb
-
-
-def charging_of(circuit: Circuit, rs: tuple[Floats, ...]) -> Floats:
-    """Return the resistance in ohm that the capacitor charges through."""
-    if len(rs) == 2 and circuit.twin.through_both:  # noqa: PLR2004 - RA and RB
-        return np.asarray(rs[0] + rs[1])
-    return rs[0]

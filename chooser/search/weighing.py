@@ -14,8 +14,8 @@ from typing import Protocol, TypeAlias
 import numpy as np
 from numpy.typing import NDArray
 
-from chooser.chance import device_law
-from chooser.circuits.circuit import outputs_of
+from chooser.chance import device_of
+from chooser.circuits.circuit import charging_resistance, outputs_of
 from chooser.interval import likely_miss, mean_of, spread_of, weight_of
 from chooser.networks import Join
 from chooser.search.front import OUTSIDE
@@ -28,7 +28,7 @@ from chooser.search.slots import CapacitorSlots, lot_tolerances
 from chooser.search.space import Level, Space
 from chooser.search.tables import Rows, allowed
 from chooser.search.terms import NEAREST
-from chooser.search.wanted import FAR_OHM, LEAST_OHM, aim_of, charging_of, wanted_resistances
+from chooser.search.wanted import FAR_OHM, LEAST_OHM, aim_of, wanted_resistances
 
 Several: TypeAlias = tuple[Rows, ...]
 
@@ -124,7 +124,7 @@ class SingleWeigher:
     def __init__(self, space: Space) -> None:
         self._request = space.request
         self._law = space.request.circuit.law
-        self._device = device_law(space.request.circuit.error)
+        self._device = device_of(space.request.circuit)
         self._tables = space.resistor_tables
         self._lots = Lots(space)
 
@@ -204,7 +204,7 @@ class TwinWeigher:
         self._space = space
         self._request = space.request
         self._law = space.request.circuit.twin
-        self._device = device_law(space.request.circuit.error)
+        self._device = device_of(space.request.circuit)
         self._tables = space.resistor_tables
         self._lots = Lots(space)
         self._aims: dict[int, tuple[Floats, ...]] = {}
@@ -244,7 +244,7 @@ class TwinWeigher:
         near_a = nearest(self._tables, size_a, wish, NEAREST)
         rows_a, rows_b = near_a.rows, rows_b.take(near_a.owner)
         owner, ra = owner[near_a.owner], ra[near_a.owner]
-        charging = charging_of(self._request.circuit, (rows_a.value, rows_b.value))
+        charging = charging_resistance(self._request.circuit, (rows_a.value, rows_b.value))
         kept = allowed(np.concatenate([rows_a.leaves, rows_b.leaves], axis=1), self._tables.uses)
         kept &= charging <= most[owner] * (1 + SAME)
         kept &= np.abs(rows_a.value - ra) <= room[owner] * charging
@@ -288,7 +288,7 @@ class TwinWeigher:
         wanted: Floats | float = aim_of(self._request)[0]
         if any(target.output == "period" for target in self._request.targets):
             wanted = np.maximum(sum(aim_of(self._request)) - low, 1e-3 * wanted)
-        charging = charging_of(circuit, (ra, rb))
+        charging = charging_resistance(circuit, (ra, rb))
         with np.errstate(invalid="ignore"):
             return np.asarray(ra + np.nan_to_num(charging * (wanted / high - 1)))
 

@@ -13,6 +13,7 @@ from dataclasses import dataclass
 from math import inf
 
 from chooser.circuits.circuit import Circuit
+from chooser.circuits.output import check_output
 from chooser.errors import BadRequestError
 from chooser.quantities import format_current, format_voltage
 
@@ -85,8 +86,7 @@ def drive_of(circuit: Circuit, led: Led) -> Drive:
         The output may not carry that much, or nothing is left for a resistor.
     """
     level, series, most = _output(circuit, to_supply=led.to_supply)
-    if led.ampere > most:
-        _refuse_current(circuit, led, most)
+    _check_current(circuit, led, most)
     drive = Drive(circuit.supply - level - led.volt, series, most)
     if drive.ohm(led.ampere) <= 0.0:
         _refuse_voltage(circuit, led, circuit.supply - level - series * led.ampere)
@@ -138,17 +138,14 @@ def _output(circuit: Circuit, *, to_supply: bool) -> tuple[float, float, float]:
     return timer.output_high_drop_typical, timer.output_high_resistance, timer.source_current_limit
 
 
-def _refuse_current(circuit: Circuit, led: Led, most: float) -> None:
-    verb = "sink" if led.to_supply else "source"
+def _check_current(circuit: Circuit, led: Led, most: float) -> None:
     _, _, other = _output(circuit, to_supply=not led.to_supply)
     way = ""
     if other >= led.ampere:
         to, does = ("ground", "source") if led.to_supply else ("supply", "sink")
         way = f", or turn it round (--led-to {to}): it can {does} {format_current(other, digits=3)}"
-    raise BadRequestError(
-        f"The output of the {circuit.device} can {verb} {format_current(most, digits=3)}, and the "
-        f"LED is to have {format_current(led.ampere, digits=3)}; drive it by a transistor{way}."
-    )
+    verb = "sink" if led.to_supply else "source"
+    check_output(circuit.device, most, led.ampere, "the LED is to have", verb=verb, way=way)
 
 
 def _refuse_voltage(circuit: Circuit, led: Led, left: float) -> None:

@@ -18,6 +18,7 @@ from caution_bench import (
 from chooser.cautions import STANDING, Caution, Code, cautions_of, needed_rating
 from chooser.circuits.counter import counter
 from chooser.circuits.counters import counter_named
+from chooser.circuits.delay import delay
 from chooser.circuits.diodes import diode_named
 from chooser.circuits.gates import gate_named
 from chooser.circuits.output_fed import output_fed
@@ -26,7 +27,7 @@ from chooser.circuits.schmitt import schmitt
 from chooser.circuits.steered import steered
 from chooser.circuits.timers import timer_named
 from chooser.networks import Group, Join, Leaf
-from chooser.parts import Count, Sureness
+from chooser.parts import Count, Sureness, Tolerance
 
 
 def in_series(c):
@@ -48,6 +49,10 @@ def steering(diode="silicon", supply=9.0, ra=None):
 
 def inverting(r, c):
     return fit(schmitt(gate_named("74HC14"), 5.0), r, c)
+
+
+def delaying(error):
+    return fit(delay(5.0, 0.5, error), resistor(), film())
 
 
 WORRYING = {
@@ -97,6 +102,17 @@ WORRYING = {
     "capacitor-tolerance": [
         timed(resistor(), electrolytic(), target=24.5),
         flashing(resistor(10e3), resistor(10e3), electrolytic(), "TLC555"),
+    ],
+    "device-scatter": [
+        inverting(resistor(100e3), film(100e-9)),
+        fed(resistor(10e3), supply=9.0),
+        dividing(film()),
+        delaying(Tolerance(0.2, 0.2)),
+    ],
+    "threshold-exact": [delaying(Tolerance(0.0, 0.0))],
+    "assumed-kind": [
+        timed(resistor(), film(technology=None)),
+        fit(capacitance(), film(technology=None)),
     ],
     "diode-supply": [steering(), steering(supply=5.0), steering("schottky", 5.0)],
     "assumed-tolerance": [
@@ -194,6 +210,14 @@ CALM = {
         timed(resistor(tolerance=TWENTY), electrolytic(), target=24.5),
         fit(capacitance(9.0), electrolytic()),
     ],
+    "device-scatter": [
+        timed(resistor(), film()),
+        flashing(resistor(10e3), resistor(10e3), film()),
+        fed(resistor(10e3), "TLC555"),
+        fit(schmitt(gate_named("74HC14"), 5.0, 0.8), resistor(100e3), film(100e-9)),
+    ],
+    "threshold-exact": [delaying(Tolerance(0.05, 0.05)), timed(resistor(), film())],
+    "assumed-kind": [timed(resistor(technology=None), film())],
     "diode-supply": [
         steering("ideal"),
         steering("0.3V", 15.0),

@@ -310,8 +310,9 @@ def test_the_circuit_has_the_timers_figures(timer):
     assert circuit.first == replace(circuit.typical, lower=0.0)
     losses = {(law.input_current, law.switch_leak, law.switch) for law in circuit.corners}
     assert losses == {
-        (*loss, switch)
-        for loss in ((0.0, 0.0), (found.threshold_current_limit, found.discharge_leakage_limit))
+        (current, leak, switch)
+        for current in (0.0, found.threshold_current_limit)
+        for leak in (0.0, found.discharge_leakage_limit)
         for switch in (0.0, found.discharge_resistance_limit)
     }
     assert circuit.error.plus == circuit.error.minus == found.astable_error_limit

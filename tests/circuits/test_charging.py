@@ -369,3 +369,12 @@ def test_shapes_broadcast_and_blocks_do_not_show():
     assert phase.resistance(1.0, 1e-6, 0.0).shape == ()
     assert phase.resistance(1.0, np.array([]), 0.0).shape == (0,)
     assert phase.times((1e4,), c[:5], 0.0)[0].shape == (5,)
+
+
+@pytest.mark.parametrize("threshold", [1.0, 1.2, 5.0])
+@pytest.mark.parametrize("loss", [0.0, 1e-6, -1e-6])
+def test_a_trip_point_beyond_the_source_has_no_current_left(threshold, loss):
+    phase = Phase(5.0, threshold, loss)
+    assert phase.trip_ratio(1e5, 1e-9) == 0.0
+    if loss >= 0.0:
+        assert phase.interval(1e5, 1e-6, 1e-9) == inf

@@ -21,6 +21,30 @@ def test_what_is_allowed_comes_back(control):
     assert trip_points(NE555, 9.0, control) == (control / 9.0, control / 18.0)
 
 
+def test_the_lower_trip_point_follows_by_the_timers_own_divider():
+    """ICM7555 product specification p. 339: 0.65 and 0.31 of the supply, when left alone."""
+    timer = timer_named("ICM7555")
+    assert trip_points(timer, 10.0, None) == (0.65, 0.31)
+    assert trip_points(timer, 10.0, 6.5) == pytest.approx((0.65, 0.31))
+    assert trip_points(timer, 10.0, 5.0) == pytest.approx((0.5, 0.5 * 0.31 / 0.65))
+    free, forced = astable(timer, 10.0), astable(timer, 10.0, 6.5)
+    for law, other in zip(free.corners, forced.corners, strict=True):
+        times = [float(t) for t in law.times((1e4, 2e4), 1e-6, 0.0)]
+        assert [float(t) for t in other.times((1e4, 2e4), 1e-6, 0.0)] == pytest.approx(times)
+
+
+def test_it_is_said_that_the_pin_is_forced():
+    assert monostable(NE555, 9.0).setting == astable(NE555, 9.0).setting == ""
+    assert monostable(NE555, 9.0, 4.0).setting == "control pin at 4 V"
+    silicon = diode_named("silicon")
+    assert steered(NE555, 9.0, silicon).setting == "silicon diode past RB"
+    assert (
+        steered(NE555, 9.0, silicon, both=True, control=4.0).setting
+        == "a silicon diode in each path, control pin at 4 V"
+    )
+    assert steered(NE555, 9.0, diode_named("0.6V")).setting == "diode of 600 mV past RB"
+
+
 @pytest.mark.parametrize("control", [0.999, 8.101, 9.0, 12.0, 0.0, -3.0, float("nan")])
 def test_what_is_not_is_refused_with_what_would_be(control):
     assert (LOWEST_VOLT, HIGHEST) == (1.0, 0.9)

@@ -10,7 +10,7 @@ from hypothesis import strategies as st
 from scipy.integrate import solve_ivp
 
 from chooser.circuits.charging import Phase, falling, rising
-from chooser.circuits.laws import Straight, Train, solved
+from chooser.circuits.laws import Train, solved
 
 LN2 = log(2.0)
 
@@ -168,37 +168,6 @@ def test_shapes_of_a_train():
     np.testing.assert_allclose(train.interval(found, c, 1e-9), [[1e-3] * 7, [1e-2] * 7], rtol=1e-11)
     assert train.sensitivity(found, c, 1e-9).shape == (2, 7)
     assert train.resistance(1e-3, 1e-8, 0.0).shape == ()
-
-
-# Published rules ---------------------------------------------------------------------------------
-
-
-@given(
-    st.floats(0.1, 5.0), st.one_of(st.just(0.0), st.floats(1.0, 1e4)),
-    st.floats(1, 8).map(lambda x: 10.0**x), st.floats(-11, -2).map(lambda x: 10.0**x),
-)  # fmt: skip
-def test_a_straight_rule(factor, extra, r, c):
-    law = Straight(factor, extra)
-    time = float(law.interval(r, c, 1e-3))
-    assert time == pytest.approx(factor * c * (r + extra))
-    # Where R is small beside R0 the difference has lost digits.
-    assert float(law.resistance(time, c, 0.0)) == pytest.approx(r, rel=1e-14 * (1 + extra / r) * 4)
-    assert float(law.sensitivity(r, c, 0.0)) == pytest.approx(r / (r + extra))
-    assert law.proportional is (extra == 0.0)
-    assert law.endless_from(1.0) == law.leak_bound(1.0, 3.0) == law.trip_ratio(r, 1.0) == inf
-    assert law.lossless() == law
-    exact = law.exactly((Fraction(r),), Fraction(c))
-    assert float(exact[0]) == pytest.approx(time, rel=1e-14)
-    assert law.times((r,), c, 0.0)[0] == time
-
-
-def test_a_straight_rule_by_hand():
-    # 0.28 R C (1 + 0.7k / R), a form of old TTL sheets (from memory): 0.28 C (R + 700).
-    law = Straight(0.28, 700.0)
-    assert float(law.interval(10e3, 1e-8, 0.0)) == pytest.approx(0.28e-4 * 1.07)
-    assert float(law.resistance(0.28e-8 * 500.0, 1e-8, 0.0)) == pytest.approx(-200.0)
-    assert law.interval([1e3, 2e3], 1e-8, np.zeros((3, 1))).shape == (3, 2)
-    assert law.resistance(1.0, np.ones(4), 0.0).shape == (4,)
 
 
 # The solver --------------------------------------------------------------------------------------

@@ -131,8 +131,13 @@ def test_schmitt_oscillators(row):
 @rows("schmitt_limits")
 def test_how_far_schmitt_inverters_scatter(row):
     circuit = schmitt(gate_named(row["device"]), row["supply"])
-    usual = float(circuit.law.interval(1e5, 1e-6, 0.0)) / 0.1
-    longest, shortest = usual * (1.0 + circuit.error.plus), usual * (1.0 - circuit.error.minus)
+    # 100 Mohm, so that the output's resistance does not count; corners without input current.
+    factors = [
+        float(law.interval(1e8, 1e-6, 0.0)) / 100.0
+        for law in circuit.corners
+        if law.phases[0].leak_current == 0.0
+    ]
+    longest, shortest = max(factors), min(factors)
     assert longest == pytest.approx(row["longest"], rel=row["tolerance"])
     assert shortest <= row["shortest"] * 1.001
     assert shortest == pytest.approx(row["shortest"], rel=row["tolerance"])
@@ -165,7 +170,6 @@ def test_pieces_on_the_bench_are_within_the_limits_of_the_rule(row):
     circuit, scale = divided(row["device"], row["division"])
     share = 1.0 / (row["frequency"] * scale * float(circuit.law.interval(row["r"], row["c"], 0.0)))
     assert -circuit.error.minus <= share - 1.0 <= circuit.error.plus
-    assert abs(share - 1.0) > counter_named(row["device"]).unit_to_unit
 
 
 # In print, and wrong -----------------------------------------------------------------------------

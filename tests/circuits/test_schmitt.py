@@ -2,31 +2,36 @@
 
 from dataclasses import replace
 from itertools import pairwise, product
-from math import inf, log
+from math import exp, inf, log
 
+import numpy as np
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
+from sample_slots import slot
 from turning import Turn, follow
 
+from chooser.circuits.circuit import outputs_of
 from chooser.circuits.gates import gate_named, gate_names, thresholds
 from chooser.circuits.schmitt import MEASURED, schmitt
 from chooser.errors import BadRequestError
+from chooser.interval import outlook
 from chooser.parts import Tolerance
 
 SUPPLIES = {"74HC14": 4.5, "74HCT14": 5.0, "CD40106": 10.0, "CD4093": 10.0}
 
 
-def by_integration(gate, supply, current, parts):
+def by_integration(gate, supply, current, parts, pair=None):
     """Follow the node from power-up; the output reaches the rails through its own resistance."""
     r, c, g = parts
     points = thresholds(gate, supply)
+    upper, lower = pair or (points.upper, points.lower)
     series = gate.output_resistance_typical
 
     def swung(source):
         return lambda v: ((source - v) / (r + series) - current - g * v) / c
 
-    high, low = Turn(swung(supply), points.upper * supply), Turn(swung(0.0), points.lower * supply)
+    high, low = Turn(swung(supply), upper * supply), Turn(swung(0.0), lower * supply)
     return follow([high, low, high, low], 0.0, 100.0 * (r + series) * c)
 
 
@@ -38,12 +43,13 @@ def test_full_cycles_from_power_up(name, share):
     most = gate.input_current_limit
     for r in (10e3, 470e3):
         parts = (r, 1e-7, share / r)
-        corners = product((0.0, most, -most), (0.0, gate.output_resistance_limit))
-        laws = [((0.0, gate.output_resistance_typical), circuit.typical)]
-        laws += list(zip(corners, circuit.corners, strict=True))
-        for (current, ohm), law in laws:
+        pairs = thresholds(gate, supply).extremes()
+        corners = product(pairs, (0.0, most, -most), (0.0, gate.output_resistance_limit))
+        laws = [((None, 0.0, gate.output_resistance_typical), circuit.typical)]
+        laws += list(zip(corners, circuit.corners, strict=True))[::7]
+        for (pair, current, ohm), law in laws:
             driver = replace(gate, output_resistance_typical=ohm)
-            run = by_integration(driver, supply, current, parts)
+            run = by_integration(driver, supply, current, parts, pair)
             high, low = (float(time) for time in law.times((r,), *parts[1:]))
             assert run[1:] == pytest.approx([low, high, low], rel=1e-7)
             if law is circuit.typical:
@@ -74,26 +80,76 @@ def test_without_losses_it_is_the_logarithm_of_the_thresholds(name):
     assert low == pytest.approx(log(points.upper / points.lower), rel=1e-3)
 
 
+def of_corners(circuit, output):
+    """An output at the device's corners, R so large that its output's resistance is nothing."""
+    laws = [law for law in circuit.corners if law.phases[0].leak_current == 0.0]
+    return [float(outputs_of(circuit, law.times((1e9,), 1e-9, 0.0))[output]) for law in laws]
+
+
 @pytest.mark.parametrize("name", gate_names())
-def test_the_limits_of_the_period_are_those_of_the_thresholds(name):
-    gate, supply = gate_named(name), SUPPLIES[name]
-    circuit, points = schmitt(gate, supply), thresholds(gate, supply)
+def test_the_limits_of_times_and_duty_are_those_of_the_thresholds(name):
+    """Against every pair on a grid of what the limits and the least hysteresis allow."""
+    gate = gate_named(name)
+    for row in gate.thresholds:
+        supply, points = row.supply, thresholds(gate, row.supply)
+        upper, lower = np.meshgrid(
+            np.linspace(points.upper_low, points.upper_high, 201),
+            np.linspace(points.lower_low, points.lower_high, 201),
+        )
+        there = upper - lower >= points.hysteresis_low
+        upper, lower = upper[there], lower[there]
+        high, low = np.log((1.0 - lower) / (1.0 - upper)), np.log(upper / lower)
+        circuit = schmitt(gate, supply)
+        made = outputs_of(circuit, (high, low))
+        for output in ("high", "low", "period", "duty"):
+            found = of_corners(circuit, output)
+            # The grid misses the slanted edge by a step at most.
+            assert min(found) == pytest.approx(float(made[output].min()), rel=0.03), output
+            assert min(found) <= made[output].min() * (1.0 + 1e-6), output
+            assert max(found) == pytest.approx(float(made[output].max()), rel=0.01), output
+            assert max(found) >= made[output].max() * (1.0 - 1e-6), output
 
-    def factor(upper, lower):
-        return log((1.0 - lower) / (1.0 - upper) * upper / lower)
 
-    usual = factor(points.upper, points.lower)
-    longest = factor(points.upper_high, points.lower_low)
-    assert 1.0 + circuit.error.plus == pytest.approx(longest / usual)
-    # Nothing within the limits is shorter, and the scatter is more than two to one either way.
-    for upper, lower in (
-        (points.upper_low, points.lower_low),
-        (points.upper_high, points.lower_high),
-        (points.upper, points.lower),
-    ):
-        if upper - lower >= points.hysteresis_low:
-            assert factor(upper, lower) >= usual * (1.0 - circuit.error.minus) * (1.0 - 1e-12)
-    assert (1.0 + circuit.error.plus) / (1.0 - circuit.error.minus) > 2.0
+def test_the_duty_of_a_cd40106_at_5_volt():
+    """Worked out from the limits of the table: 2.2 V with 0.9 V, and 3.6 V with 2.8 V."""
+    circuit = schmitt(gate_named("CD40106"), 5.0)
+    duties = of_corners(circuit, "duty")
+    least = log(4.1 / 2.8) / (log(4.1 / 2.8) + log(2.2 / 0.9))
+    most = log(2.2 / 1.4) / (log(2.2 / 1.4) + log(3.6 / 2.8))
+    assert (least, most) == pytest.approx((0.299, 0.643), abs=5e-4)
+    assert (min(duties), max(duties)) == pytest.approx((least, most), rel=1e-5)
+    found = outlook(circuit, (slot(1e5, 0.0, 0.0),), slot(1e-7, 0.0, 0.0), {}).of("duty")
+    assert (found.low, found.high) == pytest.approx((0.299, 0.643), abs=0.005)
+    assert 0.05 < found.spread < 0.15
+
+
+def test_a_known_factor_leaves_the_duty_open():
+    """Every pair of thresholds that stays possible has the factor, and its own duty."""
+    gate = gate_named("CD40106")
+    points, circuit = thresholds(gate, 5.0), schmitt(gate, 5.0, 0.83)
+    assert len(circuit.scatter) > 10
+    assert sum(weight for weight, _ in circuit.scatter) == pytest.approx(1.0)
+    duties = []
+    for _, law in circuit.scatter:
+        high, low = (float(time) for time in law.times((1e9,), 1e-9, 0.0))
+        assert high + low == pytest.approx(0.83, rel=1e-5)
+        # u / (1 - u) over l / (1 - l) is exp K, and high and low tell both.
+        lower = (1.0 - exp(-high)) / (exp(low) - exp(-high))
+        upper = lower * exp(low)
+        assert points.allow(upper * (1 - 1e-6), lower * (1 - 1e-6)) or points.allow(upper, lower)
+        duties.append(high / (high + low))
+    ends = of_corners(circuit, "duty")
+    assert min(ends) <= min(duties) * (1 + 1e-6) < max(duties) <= max(ends) * (1 + 1e-6)
+    assert 0.299 < min(ends) < 0.4
+    assert 0.56 < max(ends) < 0.643
+    assert max(of_corners(circuit, "period")) == pytest.approx(0.83, rel=1e-5)
+
+
+def test_a_factor_that_no_pair_of_thresholds_has_is_believed_all_the_same():
+    circuit = schmitt(gate_named("74HC14"), 5.0, 4.9)
+    assert circuit.scatter == ()
+    assert of_corners(circuit, "period") == pytest.approx([4.9] * 2, rel=1e-5)
+    assert circuit.setting == "K = 4.9 +/-2%"
 
 
 @pytest.mark.parametrize("factor", [0.5, 0.67, 0.8, 1.3])
@@ -102,6 +158,7 @@ def test_a_factor_that_was_measured_replaces_the_thresholds(factor):
     for accuracy, expected in ((None, MEASURED), (Tolerance(0.01, 0.03), Tolerance(0.01, 0.03))):
         circuit = schmitt(gate, 5.0, factor, accuracy)
         assert circuit.error == expected
+        assert circuit.setting == f"K = {factor} {'+/-2%' if accuracy is None else '-1/+3%'}"
         # Worked out: K R C; the output's 45 ohm beside 100k are 0.05 %.
         period = float(circuit.law.interval(1e5, 1e-6, 0.0))
         assert period == pytest.approx(0.1 * factor, rel=6e-4)

@@ -118,8 +118,8 @@ def test_the_first_answers_are_those_of_the_whole_space(monkeypatch, circuit, wi
 @pytest.mark.slow
 @pytest.mark.parametrize("wish", WISHES)
 @pytest.mark.parametrize("circuit", [PLAIN, STEERED], ids=["plain", "steered"])
-@pytest.mark.parametrize("seed", range(5))
-def test_the_first_answers_of_thousands_of_stocks(monkeypatch, circuit, wish, seed):
+@pytest.mark.parametrize("seed", range(1))
+def test_the_first_answers_of_many_stocks(monkeypatch, circuit, wish, seed):
     rnd = random.Random(f"{circuit.family} {wish} {seed}")
     for _ in range(80):
         holdings = random_stock(rnd, rnd.choice((2, 3, 3, 4)), rnd.choice((1, 2, 3)))
@@ -292,7 +292,7 @@ def test_real_timers_against_every_circuit(monkeypatch, seed):
 
 
 @pytest.mark.slow
-@pytest.mark.parametrize("seed", range(8))
+@pytest.mark.parametrize("seed", range(2))
 def test_real_timers_on_many_stocks(monkeypatch, seed):
     run_real(monkeypatch, random.Random(f"many real {seed}"), 100)
 

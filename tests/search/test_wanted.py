@@ -8,7 +8,7 @@ import numpy as np
 import pytest
 
 from chooser.circuits.astable import astable
-from chooser.circuits.circuit import outputs_of
+from chooser.circuits.circuit import charging_resistance, outputs_of
 from chooser.circuits.counter import counter
 from chooser.circuits.counters import counter_named
 from chooser.circuits.diodes import diode_named
@@ -20,7 +20,7 @@ from chooser.circuits.timers import timer_named
 from chooser.search.request import Request, Target
 from chooser.search.slots import charging_bounds
 from chooser.search.terms import Rule
-from chooser.search.wanted import aim_of, charging_of, wanted_resistances
+from chooser.search.wanted import aim_of, wanted_resistances
 
 SILICON = diode_named("silicon")
 PAIRS = {
@@ -57,7 +57,7 @@ def test_two_resistors_make_both_times(name):
         leak = farad / 25.0 * rnd.choice((0.0, 1e-3, 1.0))
         ra, rb = wanted_resistances(request, farad, leak)
         least, most = charging_bounds(leak, request)
-        good = (np.minimum(ra, rb) >= least) & (charging_of(circuit, (ra, rb)) <= most)
+        good = (np.minimum(ra, rb) >= least) & (charging_resistance(circuit, (ra, rb)) <= most)
         good &= np.isfinite(ra)
         times = circuit.twin.times((ra[good], rb[good]), farad[good], leak[good])
         # Three rounds of a weak coupling; the search only needs to know which networks are near.
@@ -137,4 +137,4 @@ def test_a_steered_circuit_may_aim_below_a_half():
 
 @pytest.mark.parametrize(("name", "charging"), [("ideal", 3e4), ("steered", 1e4)])
 def test_what_the_capacitor_charges_through(name, charging):
-    assert charging_of(PAIRS[name], (np.array(1e4), np.array(2e4))) == charging
+    assert charging_resistance(PAIRS[name], (np.array(1e4), np.array(2e4))) == charging
