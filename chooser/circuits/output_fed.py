@@ -29,6 +29,9 @@ _HARDLY = 1e-6  # of the supply: a source that hardly moves the node
 LEAST_OHM = 1e3
 """Common practice, no source: below it R is a load of its own on the output."""
 
+LEAST_RATIO = 10.0
+"""Least R over the output's own resistance, which differs high and low and spoils the duty."""
+
 
 def output_fed(timer: Timer, supply: float, load: float = 0.0) -> Circuit:
     """Return the circuit of a timer.
@@ -88,7 +91,7 @@ def _bounds(timer: Timer, supply: float, high: float) -> Bounds:
     current = timer.threshold_current_limit
     most = inf if current == 0.0 else supply * (high - timer.threshold) / (TRIP_RATIO * current)
     return Bounds(
-        LEAST_OHM,
+        max(LEAST_OHM, LEAST_RATIO * timer.output_high_resistance),
         min(most, MOST_OHM),
         "load on the output",
         f"the {timer.name} timer's input current and board leakage",
