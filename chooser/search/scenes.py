@@ -12,7 +12,8 @@ from typing import Protocol
 
 import numpy as np
 
-from chooser.search.joint import MARGIN, Inverse, TwoResistors, widest
+from chooser.search.boxes import MARGIN, Inverse
+from chooser.search.joint import TwoResistors, widest
 from chooser.search.pairs import Pairs
 from chooser.search.pools import Floats, Ints
 from chooser.search.slots import CapacitorSlots

@@ -18,8 +18,9 @@ from chooser.chance import device_of
 from chooser.circuits.circuit import charging_resistance, outputs_of
 from chooser.interval import likely_miss, mean_of, spread_of, weight_of
 from chooser.networks import Join
+from chooser.search.boxes import Inverse
 from chooser.search.front import OUTSIDE
-from chooser.search.joint import Inverse, errors_of, in_ranges, reach_windows
+from chooser.search.joint import errors_of, in_ranges, reach_windows
 from chooser.search.nearest import Wish, nearest, reach
 from chooser.search.pairs import SAME
 from chooser.search.pools import Floats, Ints

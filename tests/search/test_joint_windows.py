@@ -14,7 +14,8 @@ from chooser.circuits.diodes import diode_named
 from chooser.circuits.steered import steered
 from chooser.circuits.timers import timer_named
 from chooser.search import windows
-from chooser.search.joint import Inverse, box_of, errors_of, widest
+from chooser.search.boxes import Inverse, box_of
+from chooser.search.joint import errors_of, widest
 from chooser.search.request import Request
 from chooser.search.space import Space
 from chooser.search.tables import every_network
