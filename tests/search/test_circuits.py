@@ -187,7 +187,7 @@ def test_an_oscillator_with_a_leak_that_helps(monkeypatch, path, variants):
     assert not SCHMITT.proportional
     rnd = random.Random(f"schmitt {path} {len(variants)}")
     circuit = circuit_of(SCHMITT, variants, lossless=False, output="period")
-    for _ in range(25):
+    for _ in range(15):
         with monkeypatch.context() as patch:
             patch_to(patch, path, rnd)
             compare_real(leaky_stock(rnd), random_request(rnd, circuit))

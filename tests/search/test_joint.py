@@ -107,7 +107,7 @@ def compare(holdings, request, *, is_steered):
 @pytest.mark.parametrize("circuit", [PLAIN, STEERED], ids=["plain", "steered"])
 def test_the_first_answers_are_those_of_the_whole_space(monkeypatch, circuit, wish):
     rnd = random.Random(f"{circuit.family} {wish}")
-    for _ in range(30):
+    for _ in range(15):
         holdings = random_stock(rnd, 3, 2)
         with monkeypatch.context() as patch:
             patch_to(patch, rnd.choice(("listed", "split", "sieved", "batches")), rnd)

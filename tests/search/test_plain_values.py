@@ -152,7 +152,7 @@ def test_the_first_answers_of_many_stocks(monkeypatch, seed):
 @pytest.mark.parametrize("seed", range(3))
 def test_polarised_capacitors_only_stand_side_by_side(seed):
     rnd = random.Random(f"polar {seed}")
-    for _ in range(25):
+    for _ in range(12):
         holdings = [
             capacitor(
                 number,
