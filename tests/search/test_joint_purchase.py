@@ -115,7 +115,7 @@ def random_pair(rnd, circuit):
 @pytest.mark.parametrize("name", TWO_RESISTORS)
 def test_what_is_bought_for_two_resistors_gets_into_the_band(name):
     circuit, rnd, named = TWO_RESISTORS[name], random.Random(name), 0
-    for _ in range(10):
+    for _ in range(20):
         holdings = random_stock(rnd)
         request = Request(
             circuit,
