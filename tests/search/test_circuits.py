@@ -197,7 +197,7 @@ def test_an_oscillator_with_a_leak_that_helps(monkeypatch, path, variants):
 @pytest.mark.parametrize("seed", range(2))
 def test_many_circuits_on_many_stocks(monkeypatch, seed):
     rnd = random.Random(f"circuits {seed}")
-    for _ in range(60):
+    for _ in range(30):
         with monkeypatch.context() as patch:
             patch_to(patch, rnd.choice(("listed", "split", "sieved")), rnd)
             variants = rnd.choice((ONE, PINS))

