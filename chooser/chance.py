@@ -101,8 +101,8 @@ def _law_over(errors: Array, weights: Array, fine: NDArray[np.bool_]) -> DeviceL
 
 
 @lru_cache(maxsize=64)
-def device_of(circuit: Circuit) -> DeviceLaw:
-    """Return how the device makes the chief time of a circuit scatter, whatever the parts are.
+def device_of(circuit: Circuit, output: str | None = None) -> DeviceLaw:
+    """Return how the device makes a time of a circuit, or the chief one, scatter by itself.
 
     Its own factor and the scatter of its figures together, the latter with 100 kohm in each
     resistor slot and 100 nF that does not leak: losses hardly change it where the house rules
@@ -110,7 +110,7 @@ def device_of(circuit: Circuit) -> DeviceLaw:
     """
     own = device_law(circuit.error)
     rs = [USUAL_OHM] * len(circuit.resistors)
-    scatter = scatter_of(circuit, rs, USUAL_FARAD, 0.0).get(circuit.outputs[0])
+    scatter = scatter_of(circuit, rs, USUAL_FARAD, 0.0).get(output or circuit.outputs[0])
     if scatter is None:
         return own
     spread = sqrt(own.spread**2 + scatter.spread**2)

@@ -312,9 +312,9 @@ class TwinWeigher:
                 float(abs(weight)),
             ]
             with np.errstate(invalid="ignore", over="ignore"):
-                device = weight * self._device.shift
-                mean = mean_of(made[target.output], steep, shifts, device)
-                spread = spread_of(steep, spreads, weight * self._device.spread)
+                device = device_of(self._request.circuit, target.output)
+                mean = mean_of(made[target.output], steep, shifts, weight * device.shift)
+                spread = spread_of(steep, spreads, weight * device.spread)
                 miss = np.maximum(miss, likely_miss(_error(target, mean), spread))
         error = errors_of(replace(self._request, ranges_hold=False), times)
         outside = (error > self._request.within + SAME) | ~in_ranges(self._request, times)
